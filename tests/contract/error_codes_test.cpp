@@ -1,6 +1,5 @@
-// Every ErrorCode has a name and a meaning of its own. The codes are read from the header's text, so a new one cannot be forgotten.
-#include "fmm/error.hpp"
-
+// Every ErrorCode has a name and a meaning of its own. The codes are read from the header's text, so a new one cannot be
+// forgotten.
 #include <gtest/gtest.h>
 
 #include <cctype>
@@ -9,6 +8,8 @@
 #include <regex>
 #include <set>
 #include <string>
+
+#include "fmm/error.hpp"
 
 namespace farsum {
 namespace {
@@ -57,7 +58,8 @@ TEST(ErrorCodes, MeaningsAreDistinctSentences) {
 }
 
 TEST(ErrorCodes, UnknownNumberHasItsOwnWord) {
-  for (const auto& [name, number] : declared_codes()) EXPECT_NE(error_name(ErrorCode(9999)), error_name(ErrorCode(number))) << name;
+  for (const auto& [name, number] : declared_codes())
+    EXPECT_NE(error_name(ErrorCode(9999)), error_name(ErrorCode(number))) << name;
 }
 
 TEST(ErrorCodes, MessageHoldsFileItemFactAndRemedy) {
