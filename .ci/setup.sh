@@ -2,7 +2,7 @@
 #   farsum_install <scope>...            installs the missing Debian packages of these scopes (.ci/debian-packages.txt)
 #   farsum_configure <dir> <-D...>       configures a build in <dir>
 #   farsum_build <dir> [target]...       builds it
-# Settings from the environment: FARSUM_BUILD_DIR (default: build/ in the source tree), FARSUM_JOBS (default: from cores and memory).
+# Settings from the environment: FARSUM_BUILD_DIR (default: build/ in the source tree), FARSUM_JOBS (default: cores and memory).
 
 farsum_root=$(cd "$(dirname "${BASH_SOURCE[0]}")/.." && pwd -P)
 farsum_build_root=${FARSUM_BUILD_DIR:-$farsum_root/build}
