@@ -75,7 +75,9 @@ std::vector<Exact> direct_sum(const Charges& charges, const std::vector<std::siz
   return parallel_fill(targets.size(), [&](std::size_t i) { return sum_at(charges, charges.place(targets[i]), targets[i]); });
 }
 
-std::vector<Exact> direct_sum(const Charges& charges) { return direct_sum(charges, all_indices(charges.size())); }
+std::vector<Exact> direct_sum(const Charges& charges) {
+  return direct_sum(charges, all_indices(charges.size()));
+}
 
 std::vector<Exact> direct_sum_at(const Charges& sources, const Charges& targets) {
   return parallel_fill(targets.size(), [&](std::size_t i) { return sum_at(sources, targets.place(i), kNone); });

@@ -1,8 +1,8 @@
 #pragma once
 // Reference sums in extended precision, written independently of the engine:
 //   phi_i = sum_{j != i} q_j / |x_i - x_j|,   E_i = sum_{j != i} q_j (x_i - x_j)/|x_i - x_j|^3.
-// Each sum is compensated (A. Neumaier, Z. angew. Math. Mech. 54, 39 (1974)) in x87 long double: relative to the sum of absolute
-// terms the error is a few 2^-64, whatever the number of charges.
+// Each sum is compensated (A. Neumaier, Z. angew. Math. Mech. 54, 39 (1974)) in x87 long double: relative to the sum of
+// absolute terms the error is a few 2^-64, whatever the number of charges.
 #include <array>
 #include <cstddef>
 #include <vector>

@@ -11,7 +11,9 @@ namespace {
 
 using Values = std::vector<long double>;
 
-double weight_of(const std::vector<double>& weight, std::size_t i) { return weight.empty() ? 1.0 : weight[i]; }
+double weight_of(const std::vector<double>& weight, std::size_t i) {
+  return weight.empty() ? 1.0 : weight[i];
+}
 
 /// Smallest value with at least half of the weight at or below it.
 long double median(const Values& values, const std::vector<double>& weight) {
@@ -51,7 +53,9 @@ Norms norms(const Values& errors, const Values& magnitudes, const Values& sizes,
   return result;
 }
 
-long double length(long double x, long double y, long double z) { return std::sqrt(x * x + y * y + z * z); }
+long double length(long double x, long double y, long double z) {
+  return std::sqrt(x * x + y * y + z * z);
+}
 
 Measured measure_rows(double q_rms, const std::vector<Exact>& exact, const std::vector<double>& weight, const Result& result,
                       const std::function<std::size_t(std::size_t)>& row) {
@@ -96,7 +100,9 @@ void survey(const Charges& charges, std::vector<double>& nearest, std::vector<do
 
 }  // namespace
 
-Sample whole(const Charges& charges) { return {all_indices(charges.size()), {}, direct_sum(charges)}; }
+Sample whole(const Charges& charges) {
+  return {all_indices(charges.size()), {}, direct_sum(charges)};
+}
 
 Sample chosen(const Charges& charges, std::size_t special, std::size_t strided) {
   const std::size_t n = charges.size();
@@ -128,7 +134,8 @@ double charge_rms(const Charges& charges) {
 }
 
 Measured measure(const Charges& charges, const Sample& sample, const Result& result) {
-  return measure_rows(charge_rms(charges), sample.exact, sample.weight, result, [&](std::size_t i) { return sample.targets[i]; });
+  return measure_rows(charge_rms(charges), sample.exact, sample.weight, result,
+                      [&](std::size_t i) { return sample.targets[i]; });
 }
 
 Measured measure_at(const Charges& sources, const std::vector<Exact>& exact, const Result& result) {

@@ -1,6 +1,7 @@
 #pragma once
 // The error norms of the accuracy contract, written independently of the engine. With e_i = |f_i - f_i_exact| over the targets,
-// f0 = median of q_rms / d_i^k (d_i distance to the nearest other charge; k = 1 potential, 2 field), all means and medians weighted:
+// f0 = median of q_rms / d_i^k (d_i distance to the nearest other charge; k = 1 potential, 2 field), all means and medians
+// weighted:
 //   scale   = max(sqrt(mean f_i^2), f0)
 //   rms     = sqrt(mean e_i^2) / scale
 //   typical = sqrt(mean (e_i / max(|f_i|, median |f|, f0))^2)

@@ -1,6 +1,6 @@
 #pragma once
-// The tests' own random numbers: xoshiro256** seeded by splitmix64 (D. Blackman, S. Vigna, ACM Trans. Math. Softw. 47, 36 (2021)).
-// No standard distribution is used, so every compiler makes the same charges from the same seed.
+// The tests' own random numbers: xoshiro256** seeded by splitmix64 (D. Blackman, S. Vigna, ACM Trans. Math. Softw. 47, 36
+// (2021)). No standard distribution is used, so every compiler makes the same charges from the same seed.
 #include <array>
 #include <cmath>
 #include <cstddef>

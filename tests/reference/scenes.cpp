@@ -12,7 +12,9 @@ namespace {
 using Places = std::vector<Point>;
 constexpr double kTurn = 2 * std::numbers::pi;
 
-Point in_cube(Random& random) { return {random.uniform(), random.uniform(), random.uniform()}; }
+Point in_cube(Random& random) {
+  return {random.uniform(), random.uniform(), random.uniform()};
+}
 
 Point around(Random& random, const Point& centre, double width) {
   return {centre[0] + width * random.normal(), centre[1] + width * random.normal(), centre[2] + width * random.normal()};
@@ -125,23 +127,40 @@ Places outlier(std::size_t n, Random& random) {
 Places make_places(Shape shape, std::size_t n, Random& random) {
   switch (shape) {
     case Shape::cube:
-    case Shape::heavy_charge: return repeated(n, [&] { return in_cube(random); });
-    case Shape::ball: return repeated(n, [&] { return in_ball(random); });
-    case Shape::shell: return repeated(n, [&] { return random.direction(); });
-    case Shape::line: return repeated(n, [&] { return Point{random.uniform(), 0.0, 0.0}; });
-    case Shape::slanted_line: return repeated(n, [&] { return on_slanted_line(random); });
-    case Shape::helix: return repeated(n, [&] { return on_helix(random); });
-    case Shape::plane: return repeated(n, [&] { return Point{random.uniform(), random.uniform(), 0.0}; });
-    case Shape::ring: return ring(n);
-    case Shape::bunch_with_halo: return repeated(n, [&] { return in_bunch(random); });
-    case Shape::droplets: return droplets(n, random);
-    case Shape::scales_1e9: return scales_1e9(n, random);
-    case Shape::far_pair: return far_pair(n, random);
-    case Shape::close_pairs: return close_pairs(n, random);
-    case Shape::box_faces: return box_faces(n, random);
-    case Shape::outlier: return outlier(n, random);
-    case Shape::gaussian: return repeated(n, [&] { return around(random, {0, 0, 0}, 1); });
-    case Shape::lattice: break;  // made by cubic_block
+    case Shape::heavy_charge:
+      return repeated(n, [&] { return in_cube(random); });
+    case Shape::ball:
+      return repeated(n, [&] { return in_ball(random); });
+    case Shape::shell:
+      return repeated(n, [&] { return random.direction(); });
+    case Shape::line:
+      return repeated(n, [&] { return Point{random.uniform(), 0.0, 0.0}; });
+    case Shape::slanted_line:
+      return repeated(n, [&] { return on_slanted_line(random); });
+    case Shape::helix:
+      return repeated(n, [&] { return on_helix(random); });
+    case Shape::plane:
+      return repeated(n, [&] { return Point{random.uniform(), random.uniform(), 0.0}; });
+    case Shape::ring:
+      return ring(n);
+    case Shape::bunch_with_halo:
+      return repeated(n, [&] { return in_bunch(random); });
+    case Shape::droplets:
+      return droplets(n, random);
+    case Shape::scales_1e9:
+      return scales_1e9(n, random);
+    case Shape::far_pair:
+      return far_pair(n, random);
+    case Shape::close_pairs:
+      return close_pairs(n, random);
+    case Shape::box_faces:
+      return box_faces(n, random);
+    case Shape::outlier:
+      return outlier(n, random);
+    case Shape::gaussian:
+      return repeated(n, [&] { return around(random, {0, 0, 0}, 1); });
+    case Shape::lattice:
+      break;  // made by cubic_block
   }
   return {};
 }
@@ -162,16 +181,16 @@ void assign_charges(Charges& charges, Signs signs, bool unit_magnitude, Random& 
 
 const std::vector<Shape>& all_shapes() {
   static const std::vector<Shape> shapes = {
-      Shape::cube,     Shape::ball,       Shape::shell,    Shape::line,        Shape::slanted_line, Shape::helix,
-      Shape::plane,    Shape::ring,       Shape::bunch_with_halo, Shape::droplets, Shape::scales_1e9, Shape::far_pair,
-      Shape::lattice,  Shape::close_pairs, Shape::heavy_charge, Shape::box_faces, Shape::outlier,    Shape::gaussian};
+      Shape::cube,    Shape::ball,        Shape::shell,           Shape::line,      Shape::slanted_line, Shape::helix,
+      Shape::plane,   Shape::ring,        Shape::bunch_with_halo, Shape::droplets,  Shape::scales_1e9,   Shape::far_pair,
+      Shape::lattice, Shape::close_pairs, Shape::heavy_charge,    Shape::box_faces, Shape::outlier,      Shape::gaussian};
   return shapes;
 }
 
 std::string name_of(Shape shape) {
-  static const char* const names[] = {"cube",       "ball",     "shell",   "line",        "slanted_line", "helix",
-                                      "plane",      "ring",     "bunch",   "droplets",    "scales_1e9",   "far_pair",
-                                      "lattice",    "close_pairs", "heavy_charge", "box_faces", "outlier", "gaussian"};
+  static const char* const names[] = {"cube",    "ball",        "shell",        "line",      "slanted_line", "helix",
+                                      "plane",   "ring",        "bunch",        "droplets",  "scales_1e9",   "far_pair",
+                                      "lattice", "close_pairs", "heavy_charge", "box_faces", "outlier",      "gaussian"};
   return names[static_cast<std::size_t>(shape)];
 }
 

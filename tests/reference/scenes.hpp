@@ -1,5 +1,6 @@
 #pragma once
-// Seeded sets of charges that stress different parts of the engine; the same charges from every compiler up to the last bits of libm.
+// Seeded sets of charges that stress different parts of the engine; the same charges from every compiler up to the last bits of
+// libm.
 #include <cstdint>
 #include <string>
 #include <vector>

@@ -1,0 +1,65 @@
+#include "tests/accuracy/tolerance_check.hpp"
+
+#include <gtest/gtest.h>
+
+#include <algorithm>
+
+namespace farsum::accuracy {
+namespace {
+
+using reference::Measured;
+using reference::Norms;
+using reference::Outcome;
+
+/// Tolerance at which the contract's floor begins, by the independent sums.
+double floor_of(const Measured& measured) {
+  return kFloorUnits * std::max(measured.potential.rounding, measured.field.rounding);
+}
+
+void expect_stated(const char* what, double stated, double found, double rounding, double factor) {
+  const double slack = kRoundingUnits * rounding;
+  EXPECT_LE(stated, factor * found + slack) << what << ": stated error too large; rounding unit " << rounding;
+  EXPECT_GE(stated, found / factor - slack) << what << ": stated error too small; rounding unit " << rounding;
+}
+
+void expect_output(const std::string& what, const OutputError& stated, const Norms& found, double t, double factor) {
+  EXPECT_LE(found.rms, t) << what;
+  EXPECT_LE(found.typical, 3 * t) << what;
+  ASSERT_TRUE(stated.measured) << what;
+  expect_stated((what + " rms").c_str(), stated.rms, found.rms, found.rounding, factor);
+  expect_stated((what + " typical").c_str(), stated.typical, found.typical, found.rounding, factor);
+  EXPECT_GE(stated.rms_upper, stated.rms) << what;
+  EXPECT_LE(stated.worst, 2 * found.worst + kRoundingUnits * found.rounding) << what << ": stated worst above the true worst";
+}
+
+}  // namespace
+
+Subject make_subject(reference::Shape shape, reference::Signs signs, std::size_t count, std::uint64_t seed,
+                     std::size_t all_below) {
+  Subject subject{name_of(shape) + "/" + name_of(signs), make_scene(shape, signs, count, seed), {}};
+  subject.name += " N=" + std::to_string(subject.charges.size()) + " seed=" + std::to_string(seed);
+  subject.sample = subject.charges.size() <= all_below ? whole(subject.charges) : chosen(subject.charges, 150, 600);
+  return subject;
+}
+
+void expect_contract(const Subject& subject, const Options& options, double stated_factor) {
+  const double t = options.tolerance;
+  SCOPED_TRACE(subject.name + " t=" + std::to_string(t * 1e13) + "e-13");
+  const Outcome outcome = reference::solve(subject.charges, options);
+  const Measured found = measure(subject.charges, subject.sample, outcome.result);
+  if (outcome.code == ErrorCode::tolerance_unreachable) {
+    EXPECT_LT(t, kFloorSlack * floor_of(found)) << "the data carry this tolerance: " << outcome.message;
+    return;
+  }
+  ASSERT_TRUE(outcome.good()) << outcome.message << "; independent floor " << floor_of(found);
+  EXPECT_GT(t, floor_of(found) / kFloorSlack) << "the data do not carry this tolerance, but no error was raised";
+  if (options.method == Method::tree) {
+    EXPECT_EQ(outcome.report.plan.method, "tree");
+  }
+  EXPECT_TRUE(outcome.report.error.met);
+  EXPECT_EQ(outcome.report.error.samples, std::min(options.samples, subject.charges.size()));
+  expect_output("potential", outcome.report.error.potential, found.potential, t, stated_factor);
+  expect_output("field", outcome.report.error.field, found.field, t, stated_factor);
+}
+
+}  // namespace farsum::accuracy
