@@ -160,8 +160,12 @@ TEST_P(Thomson, MinimumIsThePublishedOne) {
   EXPECT_LT(residual, 1e-6) << "no equilibrium: a force along the sphere is left";
 }
 
-INSTANTIATE_TEST_SUITE_P(Counts, Thomson, testing::ValuesIn(kKnown),
-                         [](const testing::TestParamInfo<Known>& known) { return "N" + std::to_string(known.param.count); });
+std::string known_name(const testing::TestParamInfo<Known>& known) {
+  std::string name = "N";
+  return name.append(std::to_string(known.param.count));
+}
+
+INSTANTIATE_TEST_SUITE_P(Counts, Thomson, testing::ValuesIn(kKnown), known_name);
 
 }  // namespace
 }  // namespace farsum::accuracy
