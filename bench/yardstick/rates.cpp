@@ -7,6 +7,7 @@
 #include <vector>
 
 #include "bench/yardstick/yardstick.hpp"
+#include "fmm/base/cpu.hpp"
 #include "fmm/kernels/dispatch.hpp"
 
 namespace farsum::bench {
@@ -61,7 +62,7 @@ double own_pair_rate(CpuTarget target) {
   const kernels::PairSums arguments{v[0].data(), v[1].data(), v[2].data(), v[3].data(),  kPoints,
                                     v[4].data(), v[5].data(), v[6].data(), kPoints,      -1,
                                     v[7].data(), v[8].data(), v[9].data(), v[10].data(), v[11].data()};
-  const kernels::KernelTable& table = kernels::kernel_table(target);
+  const kernels::KernelTable& table = kernels::kernel_table(resolve_cpu_target(target));
   return best_rate([&] { table.pair_sums(arguments, kernels::RootAccuracy::full, true, true); });
 }
 

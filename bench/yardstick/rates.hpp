@@ -6,6 +6,7 @@ namespace farsum::bench {
 
 /// Pairs a second (potential and field, double precision to rounding, no self pairs) of the project's own direct kernel.
 /// Best of several runs of a few milliseconds each: the rate of an undisturbed core.
+/// `automatic` is the target that a solver would take.
 double own_pair_rate(CpuTarget target);
 
 /// The same of the yardstick; 0 where the processor cannot run it.
