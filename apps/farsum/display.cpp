@@ -55,6 +55,32 @@ std::string with_unit(double value, std::string_view unit, int digits) {
 
 std::string short_number(double value, int digits) { return fmt::format("{:.{}g}", value, digits); }
 
+std::string error_number(double value) {
+  std::string text = short_number(value);
+  const std::size_t exponent = text.find("e-0");
+  if (exponent != std::string::npos) text.erase(exponent + 2, 1);
+  return text;
+}
+
+std::string counted(std::uint64_t count, std::string_view noun) {
+  return fmt::format("{} {}{}", grouped(count), noun, count == 1 ? "" : "s");
+}
+
+std::string joined(const std::vector<std::string>& names) { return fmt::format("{}", fmt::join(names, ", ")); }
+
+std::vector<std::string> split_list(std::string_view text) {
+  std::vector<std::string> parts;
+  while (!text.empty()) {
+    const std::size_t comma = text.find(',');
+    std::string_view part = text.substr(0, comma);
+    text.remove_prefix(comma == std::string_view::npos ? text.size() : comma + 1);
+    while (!part.empty() && part.front() == ' ') part.remove_prefix(1);
+    while (!part.empty() && part.back() == ' ') part.remove_suffix(1);
+    if (!part.empty()) parts.emplace_back(part);
+  }
+  return parts;
+}
+
 std::string byte_size(std::uint64_t bytes) {
   constexpr std::array<std::string_view, 5> kUnits = {"B", "KiB", "MiB", "GiB", "TiB"};
   double value = double(bytes);

@@ -61,4 +61,12 @@ void forget_temporary(const std::string& path) {
     if (slot.in_use.load() && path == slot.path.data()) slot.in_use.store(false, std::memory_order_release);
 }
 
+std::function<void(const std::string&)> temporary_hook() {
+  return [current = std::string()](const std::string& path) mutable {
+    if (!current.empty()) forget_temporary(current);
+    current = path;
+    if (!current.empty()) remember_temporary(current);
+  };
+}
+
 }  // namespace farsum::command

@@ -1,5 +1,6 @@
 #pragma once
 // An end by SIGINT, SIGTERM or SIGHUP leaves no partial file behind and shows as "killed by signal" to the caller.
+#include <functional>
 #include <string>
 
 namespace farsum::command {
@@ -11,5 +12,8 @@ void install_signal_handlers();
 /// Name of a temporary file to remove when a signal arrives. Kept until forget_temporary; up to four at a time.
 void remember_temporary(const std::string& path);
 void forget_temporary(const std::string& path);
+
+/// A hook for a writer that tells the name of its temporary file before it is created and an empty name when it is gone.
+std::function<void(const std::string&)> temporary_hook();
 
 }  // namespace farsum::command
