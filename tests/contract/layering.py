@@ -18,16 +18,16 @@ RANKS = {
         "options": 0, "error": 0, "report": 0, "points": 0, "version": 0,
         "base": 1,
         "parallel": 2,
-        "domain": 3, "medium": 3,
-        "octree": 4, "expansion": 4, "kernels": 4,
-        "traversal": 5, "lattice": 5,
-        "schedule": 6, "verification": 6,
+        "domain": 3, "medium": 3, "kernels": 3,  # kernels know raw arrays only; expansion/ builds the tables they take
+        "octree": 4, "expansion": 4,
+        "traversal": 5, "lattice": 5, "verification": 5,
+        "schedule": 6,
         "solver": 7,
         "models": 8,
         "farsum_c": 9,
     },
-    # Everything directly in io/ is public; each folder of io/ needs a rank below it.
-    "io": {"hdf5": 1},
+    # Headers directly in io/ are public and of rank 0, their sources stand above the folders: one folder a file format.
+    "io": {"hdf5": 1, "openpmd": 2, "text": 2},
 }
 # Which other parts a part may see at all.
 PARTS_SEEN = {
@@ -39,7 +39,7 @@ PARTS_SEEN = {
 }
 # Folders of fmm/ whose headers are installed, beside those directly in fmm/.
 PUBLIC_FOLDERS = ("models",)
-IO_TOP_RANK = 50  # files directly in io/ that have no rank of their own
+IO_SOURCE_RANK = 50
 
 INCLUDE = re.compile(r'^[ \t]*#[ \t]*include[ \t]*([<"])([^>"]+)[>"]')
 
@@ -62,7 +62,7 @@ class File:
         if ranks is None:
             return None
         if self.part == "io" and self.direct:
-            return ranks.get(self.unit, IO_TOP_RANK)
+            return 0 if self.public else IO_SOURCE_RANK
         return ranks.get(self.unit)
 
 
@@ -112,8 +112,7 @@ def order_fault(source, target):
         return None  # reported once a folder by rank_faults
     if target_rank > source_rank:
         return f"upward: rank {source_rank} includes rank {target_rank}"
-    both_io_top = source.part == "io" and source.direct and target.direct
-    if target_rank == source_rank and target_rank != 0 and not both_io_top:
+    if target_rank == source_rank and target_rank != 0:
         return f"sideways: both have rank {source_rank}"
     return None
 
