@@ -126,7 +126,7 @@ void Session::prepare_tree(Executor& executor) {
       scaled.low[axis] = scale(bounds_.low[axis]);
       scaled.high[axis] = scale(bounds_.high[axis]);
     }
-    tree_ = build_octree(positions_, scale, Frame(scaled, 1.0), {64}, executor, ledger_);
+    tree_ = build_octree(positions_, scale, Frame(scaled, 1.0), {leaf_capacity()}, executor, ledger_);
     if (options_.coincident == Coincident::skip)
       merge_coincident(executor);
     else
@@ -137,7 +137,7 @@ void Session::prepare_tree(Executor& executor) {
 }
 
 void Session::refuse_undividable(const Octree& tree) const {
-  if (const auto pair = undividable_pair(tree, 64)) throw_close_pair(positions_, pair->first, pair->second);
+  if (const auto pair = undividable_pair(tree, leaf_capacity())) throw_close_pair(positions_, pair->first, pair->second);
 }
 
 void Session::merge_coincident(Executor& executor) {
@@ -199,8 +199,8 @@ void Session::evaluate_at(const PointsView& targets, Output outputs, const Resul
       all.high[axis] = scale(all.high[axis]);
     }
     const Frame frame(all, 1.0);
-    source_tree = build_octree(positions_, scale, frame, {64}, executor, ledger_);
-    target_tree = build_octree(targets, scale, frame, {64}, executor, ledger_);
+    source_tree = build_octree(positions_, scale, frame, {leaf_capacity()}, executor, ledger_);
+    target_tree = build_octree(targets, scale, frame, {leaf_capacity()}, executor, ledger_);
     charges = gather_charges(charges_, units.scale_charge(), *source_tree, executor, ledger_);
   }
   run_attempts({*source_tree, charges, *target_tree, units}, wanted, executor, [] {});
@@ -213,8 +213,7 @@ void Session::run_attempts(const Prepared& prepared, const ResultView& result, E
     report_.plan.attempts = attempt;
     {
       const Stopwatch watch(report_.seconds.solve);
-      const EvaluationPlan plan = choose_plan(prepared, tolerance, result.field_x != nullptr, executor);
-      run_passes(prepared, plan, result, executor);
+      run_passes(prepared, choose_plan(prepared, tolerance), result, executor);
     }
     refuse_close_pairs(prepared, result);
     after_pass();
@@ -229,19 +228,34 @@ void Session::run_attempts(const Prepared& prepared, const ResultView& result, E
   report_.memory.peak_bytes = ledger_.peak();
 }
 
-EvaluationPlan Session::choose_plan(const Prepared&, double tolerance, bool, Executor&) {
+std::uint32_t Session::leaf_capacity() const noexcept {
+  return options_.leaf_capacity > 0 ? std::uint32_t(options_.leaf_capacity) : default_leaf_capacity(options_.tolerance);
+}
+
+EvaluationPlan Session::choose_plan(const Prepared& prepared, double tolerance) const noexcept {
   EvaluationPlan plan;
+  plan.tolerance = tolerance;
   plan.root_accuracy = tolerance >= 1e-11 ? kernels::RootAccuracy::fast : kernels::RootAccuracy::full;
+  plan.method = options_.method;
+  if (options_.method != Method::automatic) return plan;
+  const double n = std::sqrt(double(prepared.sources.count) * double(prepared.targets.count));
+  plan.method = n < direct_break_even(options_.tolerance) ? Method::direct : Method::tree;
   return plan;
 }
 
+double Session::charge_rms(const Units& units) const noexcept {
+  return units.scale_charge()(charge_sums_.max_abs) * std::sqrt(charge_sums_.sum_squares / double(charges_.count));
+}
+
 void Session::run_passes(const Prepared& prepared, const EvaluationPlan& plan, const ResultView& result, Executor& executor) {
-  const Stopwatch watch(report_.seconds.near);
   if (nearest_squared_.size() != prepared.targets.count) nearest_squared_ = {ledger_, prepared.targets.count};
   const EvaluationJob job{prepared.sources, prepared.charges.data(), prepared.targets, result.field_x != nullptr,
                           options_.coincident == Coincident::skip, plan.root_accuracy, kernels_, executor, ledger_,
                           ResultWriter(result, prepared.targets.index.data(), prepared.units.potential(), prepared.units.field()),
                           nearest_squared_.data(), options_};
+  report_.plan.leaf_capacity = int(leaf_capacity());
+  if (plan.method == Method::tree) return tree_evaluator_.evaluate(job, charge_rms(prepared.units), plan.tolerance, report_);
+  const Stopwatch watch(report_.seconds.near);
   evaluate_direct(job);
 }
 
@@ -265,10 +279,8 @@ bool Session::verification_wanted() const noexcept {
 void Session::verify(const Prepared& prepared, const ResultView& result, Executor& executor) {
   const Stopwatch watch(report_.seconds.verify);
   if (options_.on_progress) options_.on_progress(Phase::verify, 0);
-  const double unit = prepared.units.scale_charge()(charge_sums_.max_abs);
-  const double charge_rms = unit * std::sqrt(charge_sums_.sum_squares / double(charges_.count));
   const VerificationOutcome outcome =
-      verify_result({prepared.sources, prepared.charges.data(), charge_rms, prepared.targets, nearest_squared_.data(), result,
+      verify_result({prepared.sources, prepared.charges.data(), charge_rms(prepared.units), prepared.targets, nearest_squared_.data(), result,
                      prepared.units.potential(), prepared.units.field()},
                     options_.samples, options_.tolerance, kernels_, executor);
   report_.error = outcome.measure;

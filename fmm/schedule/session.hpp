@@ -15,6 +15,7 @@
 #include "fmm/report.hpp"
 #include "fmm/schedule/evaluation_job.hpp"
 #include "fmm/schedule/plan.hpp"
+#include "fmm/schedule/tree_evaluation.hpp"
 
 namespace farsum {
 
@@ -58,7 +59,9 @@ class Session {
   void evaluate_merged(Output outputs, const ResultView& result);
 
   void run_attempts(const Prepared& prepared, const ResultView& result, Executor& executor, const std::function<void()>& after_pass);
-  EvaluationPlan choose_plan(const Prepared& prepared, double tolerance, bool with_field, Executor& executor);
+  std::uint32_t leaf_capacity() const noexcept;
+  double charge_rms(const Units& units) const noexcept;
+  EvaluationPlan choose_plan(const Prepared& prepared, double tolerance) const noexcept;
   void run_passes(const Prepared& prepared, const EvaluationPlan& plan, const ResultView& result, Executor& executor);
   void refuse_close_pairs(const Prepared& prepared, const ResultView& result);
   void verify(const Prepared& prepared, const ResultView& result, Executor& executor);
@@ -80,6 +83,7 @@ class Session {
   std::optional<Octree> tree_;
   AlignedArray<double> ordered_charges_;
   AlignedArray<double> nearest_squared_;
+  TreeEvaluator tree_evaluator_;
   std::unique_ptr<Merged> merged_;
   bool verified_ = false;   ///< for Verification::first
 };

@@ -1,0 +1,43 @@
+#pragma once
+// Order of each multipole-to-local translation: the smallest whose modelled error (medium/coulomb/truncation.hpp) stays within what
+// the target box may bear, given the charges of the source box.
+#include <array>
+#include <cstdint>
+#include <vector>
+
+#include "fmm/expansion/indexing.hpp"
+
+namespace farsum {
+
+/// Strength of a source box and error borne by a target box, both as base-2 logarithms in scaled units.
+/// strength: of sqrt(sum q^2 + c (sum q)^2). bearable_*: absolute error of one translation.
+class OrderChoice {
+ public:
+  OrderChoice();
+
+  /// Order for boxes of side 2^log_side at squared centre distance 4..27 (in sides); kMaxOrder if even that is not enough.
+  int order(int squared_distance, double log_side, double strength, double bearable_potential, double bearable_field) const noexcept {
+    const Row& row = rows_[std::size_t(squared_distance)];
+    const int a = row.potential[slot(strength - log_side - bearable_potential)];
+    const int b = row.field[slot(strength - 2 * log_side - bearable_field)];
+    return a > b ? a : b;
+  }
+
+ private:
+  static constexpr int kStepsPerOctave = 2, kOctaves = 64;
+  static constexpr std::size_t kSlots = std::size_t(kStepsPerOctave * kOctaves);
+  struct Row {
+    std::array<std::uint8_t, kSlots> potential, field;
+  };
+  /// Slot of a wanted reduction 2^-octaves.
+  static std::size_t slot(double octaves) noexcept {
+    const double at = octaves * kStepsPerOctave + 1;
+    return at <= 0 ? 0 : at >= double(kSlots - 1) ? kSlots - 1 : std::size_t(at);
+  }
+  std::array<Row, 28> rows_{};
+};
+
+/// Smallest order used; below it a translation costs hardly less.
+inline constexpr int kMinOrder = 2;
+
+}  // namespace farsum

@@ -1,0 +1,56 @@
+#include "fmm/expansion/rotation.hpp"
+
+#include <cmath>
+#include <cstdlib>
+
+namespace farsum {
+
+AxisTurn::AxisTurn(int order, long double cosine, long double sine) {
+  levels_.resize(std::size_t(order) + 1);
+  levels_[0] = {1.0L};
+  if (order == 0) return;
+  // Degree 1 in the order (y, z, x): k = -1 is y, 0 is z, 1 is x.
+  levels_[1] = {1, 0, 0, 0, cosine, sine, 0, -sine, cosine};
+  for (int n = 2; n <= order; ++n) fill_level(n);
+}
+
+void AxisTurn::fill_level(int n) {
+  levels_[std::size_t(n)].assign(std::size_t((2 * n + 1) * (2 * n + 1)), 0.0L);
+  for (int m = -n; m <= n; ++m)
+    for (int column = -n; column <= n; ++column)
+      if ((m < 0) == (column < 0)) levels_[std::size_t(n)][slot(n, m, column)] = new_entry(n, m, column);
+}
+
+/// The P of the recursion: entries of degree n - 1 combined with those of degree 1.
+long double AxisTurn::product(int axis, int n, int a, int b) const {
+  if (b == -n) return entry(1, axis, 1) * entry(n - 1, a, -n + 1) + entry(1, axis, -1) * entry(n - 1, a, n - 1);
+  if (b == n) return entry(1, axis, 1) * entry(n - 1, a, n - 1) - entry(1, axis, -1) * entry(n - 1, a, -n + 1);
+  return entry(1, axis, 0) * entry(n - 1, a, b);
+}
+
+long double AxisTurn::new_entry(int n, int m, int column) const {
+  const long double divisor =
+      std::abs(column) == n ? (long double)(2 * n) * (2 * n - 1) : (long double)(n + column) * (n - column);
+  const int size = std::abs(m);
+  const long double u = std::sqrt((long double)((n + m) * (n - m)) / divisor);
+  const long double v = 0.5L * std::sqrt((m == 0 ? 2.0L : 1.0L) * (n + size - 1) * (n + size) / divisor) * (m == 0 ? -1.0L : 1.0L);
+  const long double w = m == 0 ? 0.0L : -0.5L * std::sqrt((long double)((n - size - 1) * (n - size)) / divisor);
+  long double sum = 0;
+  if (u != 0) sum += u * product(0, n, m, column);
+  if (v != 0) {
+    long double part;
+    if (m == 0)
+      part = product(1, n, 1, column) + product(-1, n, -1, column);
+    else if (m > 0)
+      part = m == 1 ? std::sqrt(2.0L) * product(1, n, 0, column) : product(1, n, m - 1, column) - product(-1, n, -m + 1, column);
+    else
+      part = m == -1 ? std::sqrt(2.0L) * product(-1, n, 0, column) : product(1, n, m + 1, column) + product(-1, n, -m - 1, column);
+    sum += v * part;
+  }
+  if (w != 0)
+    sum += w * (m > 0 ? product(1, n, m + 1, column) + product(-1, n, -m - 1, column)
+                      : product(1, n, m - 1, column) - product(-1, n, -m + 1, column));
+  return sum;
+}
+
+}  // namespace farsum
