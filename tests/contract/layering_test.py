@@ -60,7 +60,8 @@ class Layering(unittest.TestCase):
         self.assert_fault("upward", fmm__base__a_dot_hpp='  #  include "fmm/kernels/pair.hpp"\n')
 
     def test_sideways_include(self):
-        self.assert_fault("sideways", fmm__octree__build_dot_hpp='#include "fmm/expansion/row.hpp"\n', fmm__expansion__row_dot_hpp="")
+        self.assert_fault("sideways", fmm__octree__build_dot_hpp='#include "fmm/expansion/row.hpp"\n',
+                          fmm__expansion__row_dot_hpp="")
 
     def test_circle(self):
         self.assert_fault("circle", fmm__base__a_dot_hpp='#include "fmm/base/b.hpp"\n',
@@ -83,10 +84,12 @@ class Layering(unittest.TestCase):
                           tests__reference__sums_dot_hpp="")
 
     def test_thin_hdf5_layer_includes_a_format(self):
-        self.assert_fault("upward", io__hdf5__handle_dot_cpp='#include "io/openpmd/layout.hpp"\n', io__openpmd__layout_dot_hpp="")
+        self.assert_fault("upward", io__hdf5__handle_dot_cpp='#include "io/openpmd/layout.hpp"\n',
+                          io__openpmd__layout_dot_hpp="")
 
     def test_one_format_includes_another(self):
-        self.assert_fault("sideways", io__text__table_dot_cpp='#include "io/openpmd/layout.hpp"\n', io__openpmd__layout_dot_hpp="")
+        self.assert_fault("sideways", io__text__table_dot_cpp='#include "io/openpmd/layout.hpp"\n',
+                          io__openpmd__layout_dot_hpp="")
 
     def test_folder_without_rank(self):
         self.assert_fault("no rank", fmm__helpers__a_dot_hpp="")
