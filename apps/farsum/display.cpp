@@ -13,7 +13,10 @@ std::size_t utf8_length(std::string_view text) {
   const auto byte = [&](std::size_t i) { return static_cast<unsigned char>(text[i]); };
   const unsigned char lead = byte(0);
   if (lead < 0x80) return 1;
-  const std::size_t length = lead >= 0xC2 && lead <= 0xDF ? 2 : (lead & 0xF0) == 0xE0 ? 3 : lead >= 0xF0 && lead <= 0xF4 ? 4 : 0;
+  const std::size_t length = lead >= 0xC2 && lead <= 0xDF   ? 2
+                             : (lead & 0xF0) == 0xE0        ? 3
+                             : lead >= 0xF0 && lead <= 0xF4 ? 4
+                                                            : 0;
   if (length == 0 || text.size() < length) return 0;
   for (std::size_t i = 1; i < length; ++i)
     if ((byte(i) & 0xC0) != 0x80) return 0;
@@ -24,7 +27,8 @@ std::size_t utf8_length(std::string_view text) {
   return length;
 }
 
-/// Control characters and those that reorder or hide text on a terminal (C1, bidirectional marks, line separators, byte order mark).
+/// Control characters and those that reorder or hide text on a terminal (C1, bidirectional marks, line separators, byte order
+/// mark).
 bool is_control(std::string_view sequence) {
   const auto byte = [&](std::size_t i) { return static_cast<unsigned char>(sequence[i]); };
   if (sequence.size() == 1) return byte(0) < 0x20 || byte(0) == 0x7F;
@@ -53,7 +57,9 @@ std::string with_unit(double value, std::string_view unit, int digits) {
   return fmt::format("{:.{}g} {}{}", rounded / std::pow(10.0, 3 * step), digits, kPrefixes[std::size_t(step + 5)], unit);
 }
 
-std::string short_number(double value, int digits) { return fmt::format("{:.{}g}", value, digits); }
+std::string short_number(double value, int digits) {
+  return fmt::format("{:.{}g}", value, digits);
+}
 
 std::string error_number(double value) {
   std::string text = short_number(value);
@@ -66,7 +72,9 @@ std::string counted(std::uint64_t count, std::string_view noun) {
   return fmt::format("{} {}{}", grouped(count), noun, count == 1 ? "" : "s");
 }
 
-std::string joined(const std::vector<std::string>& names) { return fmt::format("{}", fmt::join(names, ", ")); }
+std::string joined(const std::vector<std::string>& names) {
+  return fmt::format("{}", fmt::join(names, ", "));
+}
 
 std::vector<std::string> split_list(std::string_view text) {
   std::vector<std::string> parts;

@@ -27,8 +27,8 @@ std::string counted(std::uint64_t count, std::string_view noun);
 std::string joined(const std::vector<std::string>& names);
 /// The parts of a list separated by commas, blanks around them removed, empty ones left out.
 std::vector<std::string> split_list(std::string_view text);
-/// Text from outside made safe for one line of a terminal: control bytes, escape sequences and invalid UTF-8 as \xNN, and at most
-/// `limit` bytes.
+/// Text from outside made safe for one line of a terminal: control bytes, escape sequences and invalid UTF-8 as \xNN, and at
+/// most `limit` bytes.
 std::string printable(std::string_view text, std::size_t limit = 400);
 /// Valid UTF-8 for JSON: bytes that are not part of a valid sequence become U+FFFD.
 std::string valid_utf8(std::string_view text);

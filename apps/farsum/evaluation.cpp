@@ -36,7 +36,9 @@ void resize_columns(Evaluation& evaluation, std::size_t count, Output outputs) {
   for (std::vector<double>* column : {&evaluation.field_x, &evaluation.field_y, &evaluation.field_z}) column->resize(count);
 }
 
-double* data_or_null(std::vector<double>& column) { return column.empty() ? nullptr : column.data(); }
+double* data_or_null(std::vector<double>& column) {
+  return column.empty() ? nullptr : column.data();
+}
 
 ResultView view(Evaluation& evaluation) {
   return {data_or_null(evaluation.potential), data_or_null(evaluation.field_x), data_or_null(evaluation.field_y),
@@ -44,11 +46,13 @@ ResultView view(Evaluation& evaluation) {
 }
 
 /// Copies the rows of `wanted` out of results that run over `computed`, both in the order of the set.
-void scatter(Evaluation& rows, const std::vector<io::SpeciesRange>& computed, const std::vector<io::SpeciesRange>& wanted, Evaluation& to) {
+void scatter(Evaluation& rows, const std::vector<io::SpeciesRange>& computed, const std::vector<io::SpeciesRange>& wanted,
+             Evaluation& to) {
   const auto copy = [&](const std::vector<double>& source, std::vector<double>& target) {
     std::size_t at = 0;
     for (const io::SpeciesRange& range : computed) {
-      const bool keep = std::any_of(wanted.begin(), wanted.end(), [&](const io::SpeciesRange& w) { return w.begin == range.begin && w.end == range.end; });
+      const bool keep = std::any_of(wanted.begin(), wanted.end(),
+                                    [&](const io::SpeciesRange& w) { return w.begin == range.begin && w.end == range.end; });
       if (keep && !source.empty())
         std::copy_n(source.begin() + std::ptrdiff_t(at), range.count(), target.begin() + std::ptrdiff_t(range.begin));
       at += range.count();
@@ -73,9 +77,9 @@ Report merged(const Report& first, const Report& second) {
   both.error.field = larger(first.error.field, second.error.field);
   both.error.samples += second.error.samples;
   both.error.met = first.error.met && second.error.met;
-  const auto add = [&](double PhaseSeconds::* phase) { both.seconds.*phase += second.seconds.*phase; };
-  for (const auto phase : {&PhaseSeconds::tree, &PhaseSeconds::lists, &PhaseSeconds::far, &PhaseSeconds::near, &PhaseSeconds::solve,
-                           &PhaseSeconds::verify})
+  const auto add = [&](double PhaseSeconds::*phase) { both.seconds.*phase += second.seconds.*phase; };
+  for (const auto phase : {&PhaseSeconds::tree, &PhaseSeconds::lists, &PhaseSeconds::far, &PhaseSeconds::near,
+                           &PhaseSeconds::solve, &PhaseSeconds::verify})
     add(phase);
   both.memory.predicted_bytes = std::max(first.memory.predicted_bytes, second.memory.predicted_bytes);
   both.memory.peak_bytes = std::max(first.memory.peak_bytes, second.memory.peak_bytes);
@@ -112,7 +116,8 @@ void evaluate_acting(const Gathered& sources, const RowRoles& roles, Output outp
   scatter(rows, roles.acting, roles.both, evaluation);
 }
 
-void evaluate_others(const io::ParticleSet& set, const RowRoles& roles, Output outputs, Solver& solver, Evaluation& evaluation) {
+void evaluate_others(const io::ParticleSet& set, const RowRoles& roles, Output outputs, Solver& solver,
+                     Evaluation& evaluation) {
   const Gathered targets = gather(set, roles.only_evaluated);
   Evaluation rows;
   resize_columns(rows, targets.x.size(), outputs);
@@ -127,7 +132,8 @@ void evaluate_others(const io::ParticleSet& set, const RowRoles& roles, Output o
 
 }  // namespace
 
-void evaluate(const io::ParticleSet& set, const RowRoles& roles, Output outputs, const Options& options, Evaluation& evaluation) {
+void evaluate(const io::ParticleSet& set, const RowRoles& roles, Output outputs, const Options& options,
+              Evaluation& evaluation) {
   evaluation.acting = count_rows(roles.acting);
   evaluation.evaluated = count_rows(roles.both) + count_rows(roles.only_evaluated);
   resize_columns(evaluation, set.size(), outputs);

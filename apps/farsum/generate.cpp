@@ -17,8 +17,8 @@
 namespace farsum::command {
 namespace {
 
-constexpr std::uint64_t kBytesEach = 100;            // of memory, at the peak of the making
-constexpr double kLargestCount = 4294967295.0;       // the engine counts with 32 bits
+constexpr std::uint64_t kBytesEach = 100;       // of memory, at the peak of the making
+constexpr double kLargestCount = 4294967295.0;  // the engine counts with 32 bits
 
 struct GenerateOptions {
   CommonOptions common;
@@ -38,7 +38,8 @@ std::string scene_list() {
 std::size_t parse_count(const std::string& text) {
   double value = 0;
   const auto [end, failure] = std::from_chars(text.data(), text.data() + text.size(), value);
-  if (failure != std::errc() || end != text.data() + text.size() || !(value >= 0 && value <= kLargestCount) || value != std::floor(value))
+  if (failure != std::errc() || end != text.data() + text.size() || !(value >= 0 && value <= kLargestCount) ||
+      value != std::floor(value))
     throw UsageError(fmt::format("--count: '{}' is not a whole number from 0 to {:.0f}", text, kLargestCount));
   return std::size_t(value);
 }
@@ -122,17 +123,18 @@ void add_generate(CLI::App& app, int& status) {
   CLI::App& sub = *app.add_subcommand("generate", "Make a particle file with demonstration charges.");
   sub.add_option("SCENE", options->scene, "Name of a scene, see below.")->required()->type_name("");
   sub.add_option("OUT", options->output, "File to write (openPMD, HDF5).")->required()->type_name("");
-  sub.add_option("--count", options->count, "How many charges. Default: depends on the scene, 10 000 to 100 000.")->type_name("N");
-  sub.add_option("--seed", options->seed, "Start of the random numbers; equal seeds give equal charges\nfrom every build. Default: 1.")
+  sub.add_option("--count", options->count, "How many charges. Default: depends on the scene, 10 000 to 100 000.")
+      ->type_name("N");
+  sub.add_option("--seed", options->seed,
+                 "Start of the random numbers; equal seeds give equal charges\nfrom every build. Default: 1.")
       ->type_name("S");
   sub.add_flag("--both-signs", options->both_signs, "Make every second charge negative, where the scene allows it.");
   add_common_options(sub, options->common);
   sub.footer("Scenes:\n" + scene_list() + "\n" +
              help_footer("  farsum generate proton_bunch bunch.h5 --count 1e6\n"
                          "  farsum generate droplets spray.h5 --seed 7 --both-signs\n"));
-  sub.callback([options, &status] {
-    status = run_guarded("generate", options->common, [&](Run& run) { generate(run, *options); });
-  });
+  sub.callback(
+      [options, &status] { status = run_guarded("generate", options->common, [&](Run& run) { generate(run, *options); }); });
 }
 
 }  // namespace farsum::command

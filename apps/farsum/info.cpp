@@ -25,7 +25,9 @@ struct InfoOptions {
   bool strict = false;
 };
 
-Json number(double value) { return std::isfinite(value) ? Json(value) : Json(nullptr); }
+Json number(double value) {
+  return std::isfinite(value) ? Json(value) : Json(nullptr);
+}
 
 Json species_json(const io::SpeciesSummary& species) {
   Json entry;
@@ -71,12 +73,14 @@ void say_species(Run& run, const io::SpeciesSummary& species) {
                       species.lost > 0 ? fmt::format(" live, {} lost", grouped(species.lost)) : std::string()));
   if (!species.particle_type.empty()) run.say(fmt::format("  kind            {}", printable(species.particle_type)));
   if (!species.charge_source.empty())
-    run.say(fmt::format("  total charge    {} (from {})", with_unit(contents.total_charge, "C"), printable(species.charge_source)));
+    run.say(
+        fmt::format("  total charge    {} (from {})", with_unit(contents.total_charge, "C"), printable(species.charge_source)));
   if (contents.has_motion)
     run.say(fmt::format("  motion          mean beta gamma {:.5g}, mean velocity {:.6g} c", contents.mean_beta_gamma,
                         contents.mean_speed_over_c()));
   if (!species.snapshot)
-    run.say(fmt::format("  times           recorded from {:.6g} s to {:.6g} s: no snapshot", species.time_first, species.time_last));
+    run.say(fmt::format("  times           recorded from {:.6g} s to {:.6g} s: no snapshot", species.time_first,
+                        species.time_last));
   run.say(fmt::format("  records         {}", printable(joined(species.records), 1000)));
   if (!species.missing.empty()) run.say(fmt::format("  missing         {}", printable(joined(species.missing), 1000)));
 }
@@ -84,7 +88,8 @@ void say_species(Run& run, const io::SpeciesSummary& species) {
 std::string box_text(const io::Contents& contents) {
   std::string text;
   for (std::size_t axis = 0; axis < 3; ++axis)
-    text += fmt::format("{}{} {:.6g} .. {:.6g} m", axis == 0 ? "" : ", ", "xyz"[axis], contents.lower[axis], contents.upper[axis]);
+    text +=
+        fmt::format("{}{} {:.6g} .. {:.6g} m", axis == 0 ? "" : ", ", "xyz"[axis], contents.lower[axis], contents.upper[axis]);
   return text;
 }
 
@@ -94,7 +99,8 @@ void say_outlook(Run& run, const io::FileSummary& summary) {
     run.say("several iterations: choose one with --iteration to see more");
     return;
   }
-  for (const auto& check : {+[](const io::FileSummary& s) { require_snapshot(s); }, +[](const io::FileSummary& s) { require_slow_charges(s, false); }}) {
+  for (const auto& check : {+[](const io::FileSummary& s) { require_snapshot(s); },
+                            +[](const io::FileSummary& s) { require_slow_charges(s, false); }}) {
     try {
       check(summary);
     } catch (const Error& error) {
@@ -107,10 +113,12 @@ void say_summary(Run& run, const io::FileSummary& summary) {
   run.say(fmt::format("{}: {}, {}{}", printable(summary.file), printable(summary.format), counted(summary.live(), "charge"),
                       summary.lost() > 0 ? fmt::format(" live, {} lost", grouped(summary.lost())) : std::string()));
   if (!summary.iterations.empty())
-    run.say(fmt::format("iterations        {}{}", printable(joined(summary.iterations), 500),
-                        summary.iteration.empty() || summary.iterations.size() == 1 ? "" : "; shown: " + printable(summary.iteration)));
+    run.say(fmt::format(
+        "iterations        {}{}", printable(joined(summary.iterations), 500),
+        summary.iteration.empty() || summary.iterations.size() == 1 ? "" : "; shown: " + printable(summary.iteration)));
   if (!summary.species.empty()) {
-    run.say(fmt::format("units             places in {}, charges in {}", printable(summary.length_unit), printable(summary.charge_unit)));
+    run.say(fmt::format("units             places in {}, charges in {}", printable(summary.length_unit),
+                        printable(summary.charge_unit)));
     if (summary.live() > 0) {
       run.say(fmt::format("total charge      {}", with_unit(summary.contents.total_charge, "C", 6)));
       run.say(fmt::format("extent            {} ({})", with_unit(summary.contents.extent(), "m"), box_text(summary.contents)));
@@ -130,8 +138,11 @@ void check_strictly(Run& run, const InfoOptions& options) {
   for (const io::Finding& finding : findings) {
     const bool is_error = finding.severity == io::Severity::error;
     errors += is_error;
-    run.say(fmt::format("{}: {}: {} ({})", is_error ? "error" : "warning", printable(finding.item), printable(finding.message), finding.rule));
-    list.push_back({{"severity", is_error ? "error" : "warning"}, {"rule", finding.rule}, {"item", valid_utf8(finding.item)},
+    run.say(fmt::format("{}: {}: {} ({})", is_error ? "error" : "warning", printable(finding.item), printable(finding.message),
+                        finding.rule));
+    list.push_back({{"severity", is_error ? "error" : "warning"},
+                    {"rule", finding.rule},
+                    {"item", valid_utf8(finding.item)},
                     {"message", valid_utf8(finding.message)}});
   }
   run.say(fmt::format("conformity: {}, {}", counted(errors, "error"), counted(findings.size() - errors, "warning")));
@@ -155,15 +166,16 @@ void info(Run& run, const InfoOptions& options) {
 void add_info(CLI::App& app, int& status) {
   auto options = std::make_shared<InfoOptions>();
   CLI::App& sub = *app.add_subcommand("info", "Show what a particle file holds.");
-  sub.add_option("FILE", options->file, "Particle file: openPMD (HDF5), or text with a header line.")->required()->type_name("");
+  sub.add_option("FILE", options->file, "Particle file: openPMD (HDF5), or text with a header line.")
+      ->required()
+      ->type_name("");
   sub.add_flag("--strict", options->strict, "Also hold the file against the openPMD standard; errors end with status 1.");
   add_input_options(sub, options->input);
   add_common_options(sub, options->common);
-  sub.footer(help_footer("  farsum info bunch.h5\n  farsum info bunch.h5 --strict --json - --quiet\n"
-                         "  farsum info ions.txt --length-unit um --charge-unit e\n"));
-  sub.callback([options, &status] {
-    status = run_guarded("info", options->common, [&](Run& run) { info(run, *options); });
-  });
+  sub.footer(
+      help_footer("  farsum info bunch.h5\n  farsum info bunch.h5 --strict --json - --quiet\n"
+                  "  farsum info ions.txt --length-unit um --charge-unit e\n"));
+  sub.callback([options, &status] { status = run_guarded("info", options->common, [&](Run& run) { info(run, *options); }); });
 }
 
 }  // namespace farsum::command

@@ -13,11 +13,15 @@ void add_input_options(CLI::App& app, InputOptions& options) {
   app.add_option("--iteration", options.iteration, "Which iteration (time step) of the file; needed when there are several.")
       ->type_name("NUMBER")
       ->group(kGroup);
-  app.add_option("--species", options.species, "Only these species, separated by commas. Default: all.")->type_name("LIST")->group(kGroup);
-  app.add_option("--length-unit", options.length_unit, "Unit of the places in a text file whose header has none, e.g. m, mm, Angstrom.")
+  app.add_option("--species", options.species, "Only these species, separated by commas. Default: all.")
+      ->type_name("LIST")
+      ->group(kGroup);
+  app.add_option("--length-unit", options.length_unit,
+                 "Unit of the places in a text file whose header has none, e.g. m, mm, Angstrom.")
       ->type_name("UNIT")
       ->group(kGroup);
-  app.add_option("--charge-unit", options.charge_unit, "Unit of the charges in a text file whose header has none, e.g. C, pC, e.")
+  app.add_option("--charge-unit", options.charge_unit,
+                 "Unit of the charges in a text file whose header has none, e.g. C, pC, e.")
       ->type_name("UNIT")
       ->group(kGroup);
   app.add_option("--particle-charge", options.particle_charge,
@@ -44,7 +48,8 @@ io::ReadOptions read_options(const InputOptions& options) {
     if (!std::isfinite(*options.particle_charge)) throw UsageError("--particle-charge: the value is not a finite number");
     read.charge_each = *options.particle_charge * io::kElementaryCharge;
   }
-  if (options.as_snapshot && options.advance_to) throw UsageError("--as-snapshot and --advance-to exclude each other", "give one of them");
+  if (options.as_snapshot && options.advance_to)
+    throw UsageError("--as-snapshot and --advance-to exclude each other", "give one of them");
   if (options.as_snapshot) read.non_snapshot = io::NonSnapshot::as_recorded;
   if (options.advance_to) {
     if (!std::isfinite(*options.advance_to)) throw UsageError("--advance-to: the value is not a finite time");

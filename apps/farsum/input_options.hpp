@@ -10,11 +10,11 @@ namespace farsum::command {
 
 struct InputOptions {
   std::string iteration;
-  std::string species;                    ///< comma-separated, empty: all
+  std::string species;  ///< comma-separated, empty: all
   std::string length_unit, charge_unit;
   std::optional<double> particle_charge;  ///< elementary charges
   bool as_snapshot = false;
-  std::optional<double> advance_to;       ///< s
+  std::optional<double> advance_to;  ///< s
 };
 
 void add_input_options(CLI::App& app, InputOptions& options);

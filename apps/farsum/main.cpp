@@ -1,7 +1,7 @@
 // The command farsum: potentials, fields, forces and energies of point charges from particle files.
-#include <CLI/CLI.hpp>
 #include <fmt/format.h>
 
+#include <CLI/CLI.hpp>
 #include <cstdio>
 #include <exception>
 #include <string>

@@ -11,13 +11,14 @@ namespace farsum::command {
 namespace {
 
 /// "0.0731 c"; as many nines as it takes for speeds close to that of light.
-std::string speed(double share) { return share > 0.99 ? fmt::format("{:.6f} c", share) : fmt::format("{:.3g} c", share); }
+std::string speed(double share) {
+  return share > 0.99 ? fmt::format("{:.6f} c", share) : fmt::format("{:.3g} c", share);
+}
 
 const io::SpeciesSummary* fastest(const io::FileSummary& summary) {
   const io::SpeciesSummary* found = nullptr;
   for (const io::SpeciesSummary& species : summary.species)
-    if (species.contents.has_motion &&
-        (!found || species.contents.mean_speed_over_c() > found->contents.mean_speed_over_c()))
+    if (species.contents.has_motion && (!found || species.contents.mean_speed_over_c() > found->contents.mean_speed_over_c()))
       found = &species;
   return found;
 }
@@ -46,19 +47,21 @@ std::string motion_caution(const io::FileSummary& summary) {
   double beta_gamma = 0;
   for (const io::SpeciesSummary& species : summary.species) beta_gamma = std::max(beta_gamma, species.contents.mean_beta_gamma);
   if (beta_gamma > kFastestMeanSpeed)
-    return fmt::format("single charges are fast (mean beta gamma {}) although their mean velocity is small; they were summed as if at rest",
-                       short_number(beta_gamma, 3));
+    return fmt::format(
+        "single charges are fast (mean beta gamma {}) although their mean velocity is small; they were summed as if at rest",
+        short_number(beta_gamma, 3));
   return {};
 }
 
 void require_snapshot(const io::FileSummary& summary) {
   for (const io::SpeciesSummary& species : summary.species) {
     if (species.snapshot) continue;
-    throw Error(ErrorCode::not_a_snapshot,
-                fmt::format("the particles were recorded at different times ({:.6g} s to {:.6g} s), so their places are no snapshot",
-                            species.time_first, species.time_last),
-                summary.file, "species " + species.name,
-                "choose --advance-to TIME to move each freely to one time, or --as-snapshot to take the places as they stand");
+    throw Error(
+        ErrorCode::not_a_snapshot,
+        fmt::format("the particles were recorded at different times ({:.6g} s to {:.6g} s), so their places are no snapshot",
+                    species.time_first, species.time_last),
+        summary.file, "species " + species.name,
+        "choose --advance-to TIME to move each freely to one time, or --as-snapshot to take the places as they stand");
   }
 }
 

@@ -21,7 +21,9 @@ namespace fs = std::filesystem;
   throw Error(ErrorCode::file_not_writable, what, path, {}, "name another file with --json");
 }
 
-std::string reason() { return std::strerror(errno); }
+std::string reason() {
+  return std::strerror(errno);
+}
 
 /// Writes all of `text`, or tells why not.
 void write_all(int descriptor, const std::string& text, const std::string& path) {
@@ -44,7 +46,9 @@ fs::path real_target(const std::string& path) {
   return target;
 }
 
-fs::path folder_of(const fs::path& target) { return target.has_parent_path() ? target.parent_path() : fs::path("."); }
+fs::path folder_of(const fs::path& target) {
+  return target.has_parent_path() ? target.parent_path() : fs::path(".");
+}
 
 void write_special(const RunReport& report, const std::string& path) {
   const int descriptor = open(path.c_str(), O_WRONLY | O_CLOEXEC);
@@ -113,7 +117,8 @@ void check_report_path(const std::string& path, bool overwrite) {
     if (access(path.c_str(), W_OK) != 0) fail(path, fmt::format("the report cannot be written ({})", reason()));
     if (!S_ISREG(info.st_mode)) return;
     if (!overwrite && !is_earlier_report(path))
-      throw Error(ErrorCode::file_exists, "exists and is not a report of farsum", path, {}, "name another file with --json or add --overwrite");
+      throw Error(ErrorCode::file_exists, "exists and is not a report of farsum", path, {},
+                  "name another file with --json or add --overwrite");
   }
   const fs::path folder = folder_of(real_target(path));
   if (access(folder.c_str(), W_OK | X_OK) != 0)

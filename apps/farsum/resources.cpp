@@ -48,7 +48,8 @@ std::vector<std::string> group_folders(const std::string& controller, bool secon
     const std::size_t first = line.find(':'), second = line.find(':', first + 1);
     if (first == std::string::npos || second == std::string::npos) continue;
     const std::string names = "," + line.substr(first + 1, second - first - 1) + ",";
-    if (second_version ? names == ",," : names.find("," + controller + ",") != std::string::npos) path = line.substr(second + 1);
+    if (second_version ? names == ",," : names.find("," + controller + ",") != std::string::npos)
+      path = line.substr(second + 1);
   }
   if (path.find("..") != std::string::npos) path.clear();  // a group outside this view: only the visible root counts
   const std::string root = second_version ? "/sys/fs/cgroup" : "/sys/fs/cgroup/" + controller;
@@ -91,7 +92,8 @@ double quota_processors() {
 }
 
 /// Room under one group's limit; file pages that the kernel can drop count as free.
-std::uint64_t group_room(std::optional<std::uint64_t> limit, std::optional<std::uint64_t> used, std::optional<std::uint64_t> droppable) {
+std::uint64_t group_room(std::optional<std::uint64_t> limit, std::optional<std::uint64_t> used,
+                         std::optional<std::uint64_t> droppable) {
   if (!limit || !used) return kNoLimit;
   const std::uint64_t held = *used - std::min(*used, droppable.value_or(0));
   return *limit - std::min(*limit, held);
@@ -103,8 +105,9 @@ std::uint64_t container_room() {
     room = std::min(room, group_room(read_number(folder + "/memory.max"), read_number(folder + "/memory.current"),
                                      read_keyed(folder + "/memory.stat", "inactive_file")));
   for (const std::string& folder : group_folders("memory", false))
-    room = std::min(room, group_room(read_number(folder + "/memory.limit_in_bytes"), read_number(folder + "/memory.usage_in_bytes"),
-                                     read_keyed(folder + "/memory.stat", "total_inactive_file")));
+    room = std::min(room,
+                    group_room(read_number(folder + "/memory.limit_in_bytes"), read_number(folder + "/memory.usage_in_bytes"),
+                               read_keyed(folder + "/memory.stat", "total_inactive_file")));
   return room;
 }
 
@@ -139,7 +142,8 @@ std::uint64_t parse_size(const std::string& text) {
   double value = 0;
   const auto [end, failure] = std::from_chars(text.data(), text.data() + text.size(), value);
   std::string suffix(end, text.data() + text.size());
-  if (failure != std::errc() || !(value >= 0)) throw std::invalid_argument("'" + text + "' is not a size; write it like 4GiB or 500MB");
+  if (failure != std::errc() || !(value >= 0))
+    throw std::invalid_argument("'" + text + "' is not a size; write it like 4GiB or 500MB");
   suffix.erase(std::remove(suffix.begin(), suffix.end(), ' '), suffix.end());
   double factor = 1;
   if (!suffix.empty() && suffix != "B" && suffix != "b") {

@@ -8,8 +8,8 @@ namespace farsum::command {
 /// Processors that this process may use: its affinity mask, cut to the container's quota rounded up; at least 1.
 int usable_processors();
 
-/// Bytes that this process could still take: the least of the machine's available memory, what each enclosing container leaves and
-/// what the address-space limit leaves.
+/// Bytes that this process could still take: the least of the machine's available memory, what each enclosing container leaves
+/// and what the address-space limit leaves.
 std::uint64_t free_memory();
 
 /// Largest resident set of this process so far, in bytes.

@@ -7,16 +7,22 @@
 #include <cmath>
 
 #include "apps/farsum/display.hpp"
+#include "fmm/error.hpp"
 #include "fmm/solver.hpp"
 
 namespace farsum::command {
 namespace {
 
-const double* data_or_null(const std::vector<double>& column) { return column.empty() ? nullptr : column.data(); }
-double* data_or_null(std::vector<double>& column) { return column.empty() ? nullptr : column.data(); }
+const double* data_or_null(const std::vector<double>& column) {
+  return column.empty() ? nullptr : column.data();
+}
+double* data_or_null(std::vector<double>& column) {
+  return column.empty() ? nullptr : column.data();
+}
 
 ResultView view(io::ResultTable& table) {
-  return {data_or_null(table.potential), data_or_null(table.field_x), data_or_null(table.field_y), data_or_null(table.field_z), 1};
+  return {data_or_null(table.potential), data_or_null(table.field_x), data_or_null(table.field_y), data_or_null(table.field_z),
+          1};
 }
 
 Output outputs_of(const io::ResultTable& table) {
@@ -36,9 +42,10 @@ void require_all_rows(const CheckedResult& checked) {
   for (const std::size_t row : checked.row) present[row] = true;
   const auto missing = std::find(present.begin(), present.end(), false);
   if (missing == present.end() && checked.row.size() == checked.input.size()) return;
-  throw Error(ErrorCode::item_wrong_size,
-              fmt::format("holds {} of the {}", grouped(checked.row.size()), counted(checked.input.size(), "charge") + " of the input"),
-              checked.result.particles.file, {}, "give the input that the result was made from, read with the same options");
+  throw Error(
+      ErrorCode::item_wrong_size,
+      fmt::format("holds {} of the {}", grouped(checked.row.size()), counted(checked.input.size(), "charge") + " of the input"),
+      checked.result.particles.file, {}, "give the input that the result was made from, read with the same options");
 }
 
 /// Differences at one target.
@@ -133,15 +140,17 @@ double rms_charge(const Sums& sums) {
   return sums.charge.empty() ? 0 : std::sqrt(double(square / static_cast<long double>(sums.charge.size())));
 }
 
-double length(double x, double y, double z) { return std::sqrt(x * x + y * y + z * z); }
+double length(double x, double y, double z) {
+  return std::sqrt(x * x + y * y + z * z);
+}
 
 }  // namespace
 
 void require_finite_results(const io::ResultTable& result) {
   const std::array<std::pair<const char*, const std::vector<double>*>, 4> columns = {{{"potential", &result.potential},
-                                                                                     {"electricField/x", &result.field_x},
-                                                                                     {"electricField/y", &result.field_y},
-                                                                                     {"electricField/z", &result.field_z}}};
+                                                                                      {"electricField/x", &result.field_x},
+                                                                                      {"electricField/y", &result.field_y},
+                                                                                      {"electricField/z", &result.field_z}}};
   for (const auto& [name, column] : columns)
     for (std::size_t i = 0; i < column->size(); ++i)
       if (!std::isfinite((*column)[i]))
@@ -154,7 +163,8 @@ ErrorMeasure check_all_charges(CheckedResult& checked, const Options& options) {
   for (std::vector<double>* column :
        {&checked.result.potential, &checked.result.field_x, &checked.result.field_y, &checked.result.field_z})
     reorder(*column, checked);
-  return measure_error(checked.input.points(), checked.input.charges(), outputs_of(checked.result), view(checked.result), options);
+  return measure_error(checked.input.points(), checked.input.charges(), outputs_of(checked.result), view(checked.result),
+                       options);
 }
 
 ErrorMeasure check_limited(CheckedResult& checked, const RowRoles& roles, const Options& options) {
@@ -165,8 +175,10 @@ ErrorMeasure check_limited(CheckedResult& checked, const RowRoles& roles, const 
   exact.coincident = Coincident::skip;  // a row that acts itself is left out of its own sum
   exact.verification = Verification::never;
   Solver solver(exact);
-  solver.set_charges({sums.x.data(), sums.y.data(), sums.z.data(), sums.x.size(), 1}, {sums.charge.data(), sums.charge.size(), 1});
-  solver.evaluate_at({sums.at_x.data(), sums.at_y.data(), sums.at_z.data(), sums.at_x.size(), 1}, Output::potential | Output::field,
+  solver.set_charges({sums.x.data(), sums.y.data(), sums.z.data(), sums.x.size(), 1},
+                     {sums.charge.data(), sums.charge.size(), 1});
+  solver.evaluate_at({sums.at_x.data(), sums.at_y.data(), sums.at_z.data(), sums.at_x.size(), 1},
+                     Output::potential | Output::field,
                      {sums.potential.data(), sums.field_x.data(), sums.field_y.data(), sums.field_z.data(), 1});
   const double k = checked.coulomb_constant, q = rms_charge(sums);
   const io::ResultTable& table = checked.result;
@@ -175,7 +187,8 @@ ErrorMeasure check_limited(CheckedResult& checked, const RowRoles& roles, const 
     const std::size_t row = sums.result_row[s];
     const double square = nearest_squared(sums, s);
     if (!table.potential.empty())
-      potential.push_back({std::abs(table.potential[row] / k - sums.potential[s]), std::abs(sums.potential[s]), q / std::sqrt(square)});
+      potential.push_back(
+          {std::abs(table.potential[row] / k - sums.potential[s]), std::abs(sums.potential[s]), q / std::sqrt(square)});
     if (table.has_field())
       field.push_back({length(table.field_x[row] / k - sums.field_x[s], table.field_y[row] / k - sums.field_y[s],
                               table.field_z[row] / k - sums.field_z[s]),

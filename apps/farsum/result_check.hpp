@@ -9,12 +9,13 @@
 
 namespace farsum::command {
 
-/// Both sides of the check: charges from the input, values from the result, and which row of the input each row of the result is.
+/// Both sides of the check: charges from the input, values from the result, and which row of the input each row of the result
+/// is.
 struct CheckedResult {
   const io::ParticleSet& input;
-  io::ResultTable& result;            ///< its columns are brought to engine units and to the order of the input
-  std::vector<std::size_t> row;       ///< of the input, for each row of the result
-  double coulomb_constant = 0;        ///< that the result was made with, V m / C
+  io::ResultTable& result;       ///< its columns are brought to engine units and to the order of the input
+  std::vector<std::size_t> row;  ///< of the input, for each row of the result
+  double coulomb_constant = 0;   ///< that the result was made with, V m / C
 };
 
 /// Throws Error(not_finite) naming the first value of the result that is no finite number.

@@ -88,8 +88,8 @@ RecordedSettings recorded_settings(const io::RunAttributes& run, const std::stri
                 "check a file that farsum solve wrote");
   settings.permittivity = io::number_or(run, kPermittivity, 1.0);
   if (!(settings.permittivity > 0) || !std::isfinite(settings.permittivity))
-    throw Error(ErrorCode::item_bad_value, fmt::format("the relative permittivity {} is not positive", settings.permittivity), file,
-                std::string("/run/") + kPermittivity, "solve again");
+    throw Error(ErrorCode::item_bad_value, fmt::format("the relative permittivity {} is not positive", settings.permittivity),
+                file, std::string("/run/") + kPermittivity, "solve again");
   settings.skip_coincident = io::text_or(run, kCoincident, "error") == "skip";
   settings.reading.iteration = io::text_or(run, kIteration, "");
   settings.reading.species = io::text_or(run, kSpecies, "");

@@ -1,6 +1,6 @@
 #pragma once
-// What a result file remembers of its making, in its group `run`: enough to check it later. Nothing in it depends on threads, time
-// or machine load, so equal jobs give equal files.
+// What a result file remembers of its making, in its group `run`: enough to check it later. Nothing in it depends on threads,
+// time or machine load, so equal jobs give equal files.
 #include "apps/farsum/evaluation.hpp"
 #include "apps/farsum/solve_options.hpp"
 #include "io/run_attributes.hpp"
@@ -17,7 +17,7 @@ struct RecordedSettings {
   bool skip_coincident = false;
   InputOptions reading;
   SpeciesRoles roles;
-  double total_energy = 0;       ///< J, NaN when not recorded
+  double total_energy = 0;  ///< J, NaN when not recorded
 };
 /// Throws Error(item_missing) when the file is no result of a solve.
 RecordedSettings recorded_settings(const io::RunAttributes& run, const std::string& file);

@@ -25,7 +25,8 @@ struct Failure {
 };
 
 Failure describe(const Error& error, int status) {
-  return {std::string(error_name(error.code())), error.message(), error.file(), error.item(), error.remedy(), error.what(), status};
+  return {
+      std::string(error_name(error.code())), error.message(), error.file(), error.item(), error.remedy(), error.what(), status};
 }
 
 /// The exception that is being handled, in words.
@@ -40,7 +41,8 @@ Failure current_failure() {
     return describe(Error(ErrorCode::out_of_memory, "memory could not be allocated", "free some memory or take fewer charges"),
                     kMemoryRefused);
   } catch (const std::exception& error) {
-    return describe(Error(ErrorCode::internal, fmt::format("unexpected failure: {}", error.what()), "please report this"), kFailed);
+    return describe(Error(ErrorCode::internal, fmt::format("unexpected failure: {}", error.what()), "please report this"),
+                    kFailed);
   } catch (...) {
     return describe(Error(ErrorCode::internal, "unexpected failure of unknown kind", "please report this"), kFailed);
   }
@@ -92,7 +94,8 @@ void add_common_options(CLI::App& app, CommonOptions& options) {
                  "Refuse work that would need more memory, e.g. 4GiB or 500MB.\n"
                  "Default: 80 % of what is free to this process.")
       ->type_name("SIZE");
-  app.add_option("--json", options.json, "Write a report with stable keys, also on failure; - is standard output.")->type_name("FILE");
+  app.add_option("--json", options.json, "Write a report with stable keys, also on failure; - is standard output.")
+      ->type_name("FILE");
   app.add_flag("--quiet", options.quiet, "No summary and no progress; failures are still told.");
   app.add_flag("--overwrite", options.overwrite, "Replace files that exist.");
 }
@@ -110,7 +113,8 @@ std::string help_footer(const std::string& examples) {
       examples);
 }
 
-Run::Run(const std::string& command, const CommonOptions& options) : options_(options), report_(command), progress_(!options.quiet) {}
+Run::Run(const std::string& command, const CommonOptions& options)
+    : options_(options), report_(command), progress_(!options.quiet) {}
 
 void Run::prepare() {
   if (options_.threads < 0 || options_.threads > kMostThreads)
@@ -131,11 +135,12 @@ void Run::say_cautions() {
 void Run::require_memory(std::uint64_t bytes, const std::string& purpose) const {
   if (bytes <= memory_ceiling_) return;
   const bool given = !options_.memory_limit.empty();
-  throw Error(ErrorCode::memory_refused,
-              fmt::format("{} need {} of memory, more than {}", purpose, byte_size(bytes),
-                          given ? fmt::format("the limit of {}", byte_size(memory_ceiling_))
-                                : fmt::format("the {} that this run may take (80 % of what is free)", byte_size(memory_ceiling_))),
-              "take fewer charges or raise --memory-limit");
+  throw Error(
+      ErrorCode::memory_refused,
+      fmt::format("{} need {} of memory, more than {}", purpose, byte_size(bytes),
+                  given ? fmt::format("the limit of {}", byte_size(memory_ceiling_))
+                        : fmt::format("the {} that this run may take (80 % of what is free)", byte_size(memory_ceiling_))),
+      "take fewer charges or raise --memory-limit");
 }
 
 int run_guarded(const std::string& command, const CommonOptions& options, const std::function<void(Run&)>& body) {
@@ -158,7 +163,8 @@ int run_guarded(const std::string& command, const CommonOptions& options, const 
 }
 
 int report_usage_error(const std::string& message, const std::string& command) {
-  fmt::print(stderr, "farsum: {}; see 'farsum {}--help'\n", printable(message, kLongestMessage), command.empty() ? "" : command + " ");
+  fmt::print(stderr, "farsum: {}; see 'farsum {}--help'\n", printable(message, kLongestMessage),
+             command.empty() ? "" : command + " ");
   return kWrongUsage;
 }
 

@@ -36,7 +36,8 @@ class Run {
   RunReport& report() { return report_; }
   Progress& progress() { return progress_; }
 
-  /// A line of the summary: on standard output, or on standard error when standard output carries the report. Nothing when quiet.
+  /// A line of the summary: on standard output, or on standard error when standard output carries the report. Nothing when
+  /// quiet.
   void say(const std::string& line);
   /// A caution: goes into the report and, as "note: ...", below the summary.
   void caution(const std::string& text) { report_.add_warning(text); }

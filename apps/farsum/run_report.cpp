@@ -12,7 +12,9 @@ using Json = nlohmann::ordered_json;
 
 constexpr int kReportVersion = 1;
 
-Json finite(double value) { return std::isfinite(value) ? Json(value) : Json(nullptr); }
+Json finite(double value) {
+  return std::isfinite(value) ? Json(value) : Json(nullptr);
+}
 
 Json nulls(std::initializer_list<const char*> keys) {
   Json group = Json::object();
@@ -42,8 +44,8 @@ RunReport::RunReport(const std::string& command) {
   json_["count"] = nullptr;
   for (const char* key : {"total_charge", "extent"}) json_[key] = nulls({"value", "unit"});
   json_["tolerance"] = nullptr;
-  json_["error"] = nulls({"potential_rms", "field_rms", "potential_rms_upper", "field_rms_upper", "potential_typical", "field_typical",
-                          "potential_worst", "field_worst", "samples", "met"});
+  json_["error"] = nulls({"potential_rms", "field_rms", "potential_rms_upper", "field_rms_upper", "potential_typical",
+                          "field_typical", "potential_worst", "field_worst", "samples", "met"});
   json_["checks"] = nulls({"total_force", "total_torque", "virial"});
   json_["energy"] = nulls({"value", "unit", "error_bound"});
   json_["constants"] = nulls({"source", "vacuum_permittivity", "unit"});
@@ -65,7 +67,9 @@ void RunReport::set_input(const std::string& file, const std::string& iteration,
   for (const std::string& name : species) input["species"].push_back(valid_utf8(name));
 }
 
-void RunReport::set_number(const char* group, const char* key, double value) { json_[group][key] = finite(value); }
+void RunReport::set_number(const char* group, const char* key, double value) {
+  json_[group][key] = finite(value);
+}
 
 void RunReport::set_quantity(const char* key, double value, const char* unit) {
   json_[key]["value"] = finite(value);

@@ -1,6 +1,6 @@
 #pragma once
-// The report of one run of the command as JSON. Every key is there in every report, also after a failure: values that are not known
-// are null and numbers are finite. The keys keep their meaning; `report_version` grows when one changes.
+// The report of one run of the command as JSON. Every key is there in every report, also after a failure: values that are not
+// known are null and numbers are finite. The keys keep their meaning; `report_version` grows when one changes.
 #include <nlohmann/json.hpp>
 #include <string>
 #include <vector>
@@ -18,8 +18,8 @@ class RunReport {
   nlohmann::ordered_json& json() { return json_; }
 
   void set_input(const std::string& file, const std::string& iteration, const std::vector<std::string>& species);
-  void set_number(const char* group, const char* key, double value);         ///< not finite: null
-  void set_quantity(const char* key, double value, const char* unit);        ///< key.{value,unit}
+  void set_number(const char* group, const char* key, double value);   ///< not finite: null
+  void set_quantity(const char* key, double value, const char* unit);  ///< key.{value,unit}
   void set_errors(const ErrorMeasure& error);
   /// Everything that the engine tells about a solve except quantities that need units.
   void set_engine(const Report& report);

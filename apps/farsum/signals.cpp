@@ -11,8 +11,8 @@
 namespace farsum::command {
 namespace {
 
-// The handler may run between any two instructions of any thread, so names live in fixed storage and a slot is shown to the handler
-// only while its text is complete.
+// The handler may run between any two instructions of any thread, so names live in fixed storage and a slot is shown to the
+// handler only while its text is complete.
 struct Slot {
   std::array<char, PATH_MAX> path{};
   std::atomic<bool> in_use{false};

@@ -36,8 +36,13 @@ class Clock {
 class SolveJob {
  public:
   SolveJob(Run& run, const SolveOptions& options)
-      : run_(run), options_(options), wanted_(wanted_records(options)), roles_(species_roles(options)), engine_(engine_options(options)),
-        read_(read_options(options.reading)), coulomb_constant_(io::kCoulombConstant / options.permittivity) {
+      : run_(run),
+        options_(options),
+        wanted_(wanted_records(options)),
+        roles_(species_roles(options)),
+        engine_(engine_options(options)),
+        read_(read_options(options.reading)),
+        coulomb_constant_(io::kCoulombConstant / options.permittivity) {
     if (roles_.limited() && options.outputs.empty()) wanted_.energy = false;
     if (roles_.limited() && wanted_.energy)
       throw UsageError("--outputs: the energy of a charge is half of charge x potential only when all charges act on all",
@@ -85,7 +90,8 @@ void SolveJob::check_before_reading() {
   io::check_output_target(options_.output, options_.common.overwrite, 0, {options_.input});
   summary_ = io::inspect(options_.input, read_, io::Depth::counts);
   if (read_.non_snapshot == io::NonSnapshot::refuse) require_snapshot(summary_);
-  io::check_output_target(options_.output, options_.common.overwrite, io::predict_result_bytes(summary_.live()), {options_.input});
+  io::check_output_target(options_.output, options_.common.overwrite, io::predict_result_bytes(summary_.live()),
+                          {options_.input});
   limit_memory();
   check_motion();
 }
@@ -93,7 +99,8 @@ void SolveJob::check_before_reading() {
 /// The reader and the engine get what is left of the ceiling after what the command itself holds.
 void SolveJob::limit_memory() {
   const std::uint64_t particles = summary_.memory_bytes(), results = result_bytes(summary_.live(), wanted_.engine());
-  run_.require_memory(kProgramBytes + particles + results, fmt::format("{} and their results", counted(summary_.live(), "charge")));
+  run_.require_memory(kProgramBytes + particles + results,
+                      fmt::format("{} and their results", counted(summary_.live(), "charge")));
   const std::uint64_t copies = roles_.limited() ? particles + results : 0;
   const std::uint64_t held = kProgramBytes + particles + results + copies;
   read_.memory_limit = run_.memory_ceiling();
@@ -124,7 +131,8 @@ void SolveJob::read() {
 
 void SolveJob::solve() {
   engine_.on_progress = [this](Phase phase, double fraction) {
-    constexpr const char* kStages[] = {"building the tree", "finding neighbours", "far field", "near field", "measuring the error"};
+    constexpr const char* kStages[] = {"building the tree", "finding neighbours", "far field", "near field",
+                                       "measuring the error"};
     run_.progress().show(kStages[std::size_t(phase)], fraction);
   };
   try {
@@ -151,8 +159,14 @@ void SolveJob::fill_report() {
 void SolveJob::write() {
   const Clock writing;
   const auto data = [](const std::vector<double>& column) { return column.empty() ? nullptr : column.data(); };
-  const io::ResultColumns columns{data(evaluation_.potential), data(evaluation_.field_x), data(evaluation_.field_y),
-                                  data(evaluation_.field_z), coulomb_constant_, wanted_.potential, wanted_.field, wanted_.force,
+  const io::ResultColumns columns{data(evaluation_.potential),
+                                  data(evaluation_.field_x),
+                                  data(evaluation_.field_y),
+                                  data(evaluation_.field_z),
+                                  coulomb_constant_,
+                                  wanted_.potential,
+                                  wanted_.field,
+                                  wanted_.force,
                                   wanted_.energy};
   io::WriteOptions write;
   write.overwrite = options_.common.overwrite;
@@ -201,9 +215,7 @@ void add_solve(CLI::App& app, int& status) {
                   "  farsum solve bunch.h5 -o result.h5 --tolerance 1e-9 --outputs field --json report.json\n"
                   "  farsum solve bunch.h5 -o halo.h5 --sources proton_core --targets proton_halo\n"
                   "  farsum solve ions.txt -o result.h5 --length-unit um --charge-unit e --permittivity 2.1\n"));
-  sub.callback([options, &status] {
-    status = run_guarded("solve", options->common, [&](Run& run) { solve(run, *options); });
-  });
+  sub.callback([options, &status] { status = run_guarded("solve", options->common, [&](Run& run) { solve(run, *options); }); });
 }
 
 }  // namespace farsum::command

@@ -15,8 +15,8 @@ struct SolveOptions {
   InputOptions reading;
   std::string input, output;
   double tolerance = 1e-6;
-  std::string outputs;          ///< comma-separated, empty: all
-  std::string sources, targets; ///< comma-separated species, empty: all
+  std::string outputs;           ///< comma-separated, empty: all
+  std::string sources, targets;  ///< comma-separated species, empty: all
   double permittivity = 1;
   std::string method = "auto", coincident = "error";
   long long samples = 200;

@@ -15,11 +15,11 @@ struct SpeciesRoles {
 
 /// Rows of a ParticleSet by role. A row may have both.
 struct RowRoles {
-  std::vector<io::SpeciesRange> acting;         ///< species that act, in the order of the set
-  std::vector<io::SpeciesRange> both;           ///< species that act and are evaluated
-  std::vector<io::SpeciesRange> only_evaluated; ///< species that are evaluated and do not act
-  std::vector<std::string> evaluated_names;     ///< all that are evaluated, in the order of the set
-  bool everything = false;                      ///< every row has both roles
+  std::vector<io::SpeciesRange> acting;          ///< species that act, in the order of the set
+  std::vector<io::SpeciesRange> both;            ///< species that act and are evaluated
+  std::vector<io::SpeciesRange> only_evaluated;  ///< species that are evaluated and do not act
+  std::vector<std::string> evaluated_names;      ///< all that are evaluated, in the order of the set
+  bool everything = false;                       ///< every row has both roles
 };
 
 /// Throws Error(item_missing) naming the known species for a name that the set does not have.

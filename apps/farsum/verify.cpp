@@ -20,8 +20,8 @@ namespace farsum::command {
 namespace {
 
 constexpr std::uint64_t kProgramBytes = 48ULL << 20;
-constexpr std::uint64_t kBytesForMatching = 24;       // a row: partner, and the ids where orders differ
-constexpr double kEnergyRounding = 1e-10;             // of half the sum of |q phi|: far above rounding, far below a changed value
+constexpr std::uint64_t kBytesForMatching = 24;  // a row: partner, and the ids where orders differ
+constexpr double kEnergyRounding = 1e-10;        // of half the sum of |q phi|: far above rounding, far below a changed value
 
 struct VerifyOptions {
   CommonOptions common;
@@ -49,11 +49,13 @@ InputOptions combined(const InputOptions& given, const InputOptions& recorded) {
 void require_memory_for(Run& run, const std::string& file) {
   const io::FileSummary summary = io::inspect(file, {}, io::Depth::counts);
   const std::uint64_t rows = summary.live();
-  run.require_memory(kProgramBytes + 2 * summary.memory_bytes() + result_bytes(rows, Output::potential | Output::field) + kBytesForMatching * rows,
+  run.require_memory(kProgramBytes + 2 * summary.memory_bytes() + result_bytes(rows, Output::potential | Output::field) +
+                         kBytesForMatching * rows,
                      fmt::format("{} and their results", counted(rows, "charge")));
 }
 
-Options engine_options(const VerifyOptions& options, const RecordedSettings& settings, std::uint64_t rows, std::uint64_t ceiling) {
+Options engine_options(const VerifyOptions& options, const RecordedSettings& settings, std::uint64_t rows,
+                       std::uint64_t ceiling) {
   Options engine;
   engine.tolerance = settings.tolerance;
   engine.samples = sample_count(options.samples);
@@ -65,8 +67,8 @@ Options engine_options(const VerifyOptions& options, const RecordedSettings& set
   return engine;
 }
 
-void fill_report(Run& run, const VerifyOptions& options, const io::ParticleSet& set, std::size_t count, const RecordedSettings& settings,
-                 const Options& engine) {
+void fill_report(Run& run, const VerifyOptions& options, const io::ParticleSet& set, std::size_t count,
+                 const RecordedSettings& settings, const Options& engine) {
   std::vector<std::string> names;
   for (const io::SpeciesRange& species : set.species) names.push_back(species.name);
   run.report().set_input(options.input, set.iteration, names);
@@ -81,8 +83,8 @@ void fill_report(Run& run, const VerifyOptions& options, const io::ParticleSet& 
 
 void say_errors(Run& run, const char* name, const OutputError& error) {
   if (error.measured)
-    run.say(fmt::format("{:<18}rms {} (95 % sure below {}), typical {}, worst {}", name, error_number(error.rms), error_number(error.rms_upper),
-                        error_number(error.typical), error_number(error.worst)));
+    run.say(fmt::format("{:<18}rms {} (95 % sure below {}), typical {}, worst {}", name, error_number(error.rms),
+                        error_number(error.rms_upper), error_number(error.typical), error_number(error.worst)));
 }
 
 /// Potentials that do not add up to the energy that the solve recorded were changed since, wherever in the file.
@@ -102,12 +104,13 @@ void check_energy(Run& run, const CheckedResult& checked, const RecordedSettings
 void require_met(const ErrorMeasure& error, const RecordedSettings& settings, const std::string& file) {
   if (error.samples == 0 || error.met) return;
   const auto words = [](const char* name, const OutputError& e) {
-    return e.measured ? fmt::format("{} rms {}, typical {}", name, error_number(e.rms), error_number(e.typical)) : std::string();
+    return e.measured ? fmt::format("{} rms {}, typical {}", name, error_number(e.rms), error_number(e.typical))
+                      : std::string();
   };
   const std::string potential = words("potential", error.potential), field = words("field", error.field);
   throw Error(ErrorCode::accuracy_not_reached,
-              fmt::format("the measured error ({}{}{}) exceeds the tolerance {}", potential, potential.empty() || field.empty() ? "" : "; ",
-                          field, error_number(settings.tolerance)),
+              fmt::format("the measured error ({}{}{}) exceeds the tolerance {}", potential,
+                          potential.empty() || field.empty() ? "" : "; ", field, error_number(settings.tolerance)),
               file, {}, "do not use this result; solve again");
 }
 
@@ -148,7 +151,8 @@ void add_verify(CLI::App& app, int& status) {
   CLI::App& sub = *app.add_subcommand("verify", "Check a result file against exact sums over its input.");
   sub.add_option("IN", options->input, "The particle file that was solved.")->required()->type_name("");
   sub.add_option("RESULT", options->result, "The file that solve wrote.")->required()->type_name("");
-  sub.add_option("--tolerance", options->tolerance, "Largest error to accept. Default: the tolerance that the result was solved for.")
+  sub.add_option("--tolerance", options->tolerance,
+                 "Largest error to accept. Default: the tolerance that the result was solved for.")
       ->type_name("T");
   sub.add_option("--samples", options->samples, "Charges at which exact sums are formed. Default: 200.")->type_name("M");
   add_input_options(sub, options->reading);
@@ -158,9 +162,8 @@ void add_verify(CLI::App& app, int& status) {
       "species act is taken from the result; options given here win. Also checked over all rows: every value is\n"
       "finite, and the potentials add up to the energy that the solve recorded.\n\n" +
       help_footer("  farsum verify bunch.h5 result.h5\n  farsum verify bunch.h5 result.h5 --samples 2000 --json check.json\n"));
-  sub.callback([options, &status] {
-    status = run_guarded("verify", options->common, [&](Run& run) { verify(run, *options); });
-  });
+  sub.callback(
+      [options, &status] { status = run_guarded("verify", options->common, [&](Run& run) { verify(run, *options); }); });
 }
 
 }  // namespace farsum::command

@@ -23,7 +23,8 @@ void add_gaussian_point(Species& species, PointRandom& random, const Gaussian& s
 }  // namespace
 
 Scene electron_bunch(const Request& request) {
-  // 0.3 mm of a 0.3 mm long bunch at gamma = 10 is 3 mm in its own frame. A spread of 1.2e-25 kg m/s is 0.1 eV of thermal energy.
+  // 0.3 mm of a 0.3 mm long bunch at gamma = 10 is 3 mm in its own frame. A spread of 1.2e-25 kg m/s is 0.1 eV of thermal
+  // energy.
   constexpr double kBunchCharge = 200e-12;
   constexpr Gaussian kShape{0.3e-3, 0.3e-3, 3e-3, 1.2e-25};
   Species electrons;

@@ -1,5 +1,6 @@
 #pragma once
-// Constants that the scenes are made with. They are fixed here, apart from io/units, so that a later CODATA set never moves a scene.
+// Constants that the scenes are made with. They are fixed here, apart from io/units, so that a later CODATA set never moves a
+// scene.
 namespace farsum::scenes {
 
 inline constexpr double kElementaryCharge = 1.602176634e-19;  ///< C, exact in the SI

@@ -15,8 +15,8 @@ struct Droplet {
   double charge;  ///< C, at 70 % of the Rayleigh limit
 };
 
-constexpr double kPlume = 2.5e-3;         // rms half width of the plume, m
-constexpr double kSmallest = 20e-9;       // radii, m
+constexpr double kPlume = 2.5e-3;    // rms half width of the plume, m
+constexpr double kSmallest = 20e-9;  // radii, m
 constexpr double kLargest = 2e-6;
 
 /// Every fourth droplet is a satellite that has just left the one before it, within a few of that one's radii.
@@ -56,7 +56,8 @@ Scene droplets(const Request& request) {
     const Droplet& d = spray[i];
     sum += d.charge;
     // Shares of the count in proportion to the charge; running sums leave no rounding behind.
-    const std::size_t end = i + 1 == spray.size() ? request.count : std::min(request.count, std::size_t(double(request.count) * (sum / total)));
+    const std::size_t end =
+        i + 1 == spray.size() ? request.count : std::min(request.count, std::size_t(double(request.count) * (sum / total)));
     for (; made < end; ++made) {
       PointRandom random(request.seed, 32, made);
       const auto p = random.on_sphere();

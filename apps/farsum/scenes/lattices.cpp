@@ -44,9 +44,8 @@ std::vector<Site> inner_sites(std::size_t count) {
   while (double(r) * double(r) * double(r) * 2.0943951 < double(count)) ++r;
   std::vector<Site> sites = sites_inside(r);
   while (sites.size() < count) sites = sites_inside(++r);
-  std::nth_element(sites.begin(), sites.begin() + std::ptrdiff_t(count), sites.end(), [](const Site& a, const Site& b) {
-    return a.key != b.key ? a.key < b.key : in_raster_order(a, b);
-  });
+  std::nth_element(sites.begin(), sites.begin() + std::ptrdiff_t(count), sites.end(),
+                   [](const Site& a, const Site& b) { return a.key != b.key ? a.key < b.key : in_raster_order(a, b); });
   sites.resize(count);
   std::sort(sites.begin(), sites.end(), in_raster_order);
   return sites;
@@ -55,9 +54,9 @@ std::vector<Site> inner_sites(std::size_t count) {
 }  // namespace
 
 Scene ion_cloud(const Request& request) {
-  // A cold one-component plasma in a harmonic trap is a spheroid of even density n = eps0 m (2 w_r^2 + w_z^2) / e^2. Axes 1:1:2 need
-  // w_z^2 = 0.173564 w_p^2 and w_r^2 = 0.413218 w_p^2 (depolarising factors of J. A. Osborn, Phys. Rev. 67, 351 (1945)); with
-  // w_z = 2 pi 100 kHz: w_r = 2 pi 154.3 kHz, n = 5.206e13 per m^3, lattice constant (2/n)^(1/3) = 33.742 micrometres.
+  // A cold one-component plasma in a harmonic trap is a spheroid of even density n = eps0 m (2 w_r^2 + w_z^2) / e^2. Axes 1:1:2
+  // need w_z^2 = 0.173564 w_p^2 and w_r^2 = 0.413218 w_p^2 (depolarising factors of J. A. Osborn, Phys. Rev. 67, 351 (1945));
+  // with w_z = 2 pi 100 kHz: w_r = 2 pi 154.3 kHz, n = 5.206e13 per m^3, lattice constant (2/n)^(1/3) = 33.742 micrometres.
   constexpr double kHalfLattice = 16.871e-6;
   constexpr double kDisplacement = 0.02 * kHalfLattice;
   constexpr double kSigmaMomentum = 2.14e-26;  // sqrt(m k T) at the Doppler limit of about 0.5 mK

@@ -25,9 +25,13 @@ std::uint64_t PointRandom::bits() {
   return mix(counter_);
 }
 
-double PointRandom::uniform() { return (double(bits() >> 11) + 0.5) * kTwoToMinus53; }
+double PointRandom::uniform() {
+  return (double(bits() >> 11) + 0.5) * kTwoToMinus53;
+}
 
-double PointRandom::symmetric() { return 2.0 * uniform() - 1.0; }
+double PointRandom::symmetric() {
+  return 2.0 * uniform() - 1.0;
+}
 
 double PointRandom::full_normal() {
   if (has_spare_) {

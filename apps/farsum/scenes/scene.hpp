@@ -1,5 +1,6 @@
 #pragma once
-// Demonstration charges of this project's own invention. SI units throughout; the same charges from every compiler (random.hpp).
+// Demonstration charges of this project's own invention. SI units throughout; the same charges from every compiler
+// (random.hpp).
 #include <cstddef>
 #include <cstdint>
 #include <string>
@@ -19,7 +20,7 @@ struct Species {
 };
 
 struct Scene {
-  std::vector<Species> species;    ///< ids run from 0 through all species in this order
+  std::vector<Species> species;  ///< ids run from 0 through all species in this order
   std::string comment;
 };
 
@@ -27,12 +28,12 @@ struct Scene {
 struct Request {
   std::size_t count = 0;
   std::uint64_t seed = 1;
-  bool both_signs = false;         ///< every second charge negative; only for scenes whose entry allows it
+  bool both_signs = false;  ///< every second charge negative; only for scenes whose entry allows it
 };
 
 struct Entry {
   std::string_view name;
-  std::string_view description;    ///< one line for the help text
+  std::string_view description;  ///< one line for the help text
   std::size_t default_count;
   bool both_signs_allowed;
   Scene (*build)(const Request&);

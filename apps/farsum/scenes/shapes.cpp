@@ -6,8 +6,8 @@
 namespace farsum::scenes {
 namespace {
 
-constexpr double kSize = 0.01;                       // m
-constexpr double kIonMass = 39.96238 * kMassUnit;    // argon-40, kg
+constexpr double kSize = 0.01;                     // m
+constexpr double kIonMass = 39.96238 * kMassUnit;  // argon-40, kg
 
 template <class Place>
 Scene fill(const Request& request, std::uint64_t stream, const char* comment, Place place) {
