@@ -157,7 +157,8 @@ def check(root):
                     targets.append(name)
                 fault = order_fault(source, File(name))
             else:
-                fault = "not found from the repository root" if quoted else None
+                to_configure = path.endswith(".in") and "@" in name
+                fault = "not found from the repository root" if quoted and not to_configure else None
             if fault:
                 faults.append(f"{path}:{number}: {name}: {fault}")
         graph[path] = targets
