@@ -7,6 +7,10 @@ namespace farsum {
 
 AxisTurn::AxisTurn(int order, long double cosine, long double sine) {
   levels_.resize(std::size_t(order) + 1);
+  for (int k = 0; k <= 2 * order + 2; ++k) {
+    roots_.push_back(std::sqrt((long double)(k)));
+    inverse_roots_.push_back(k == 0 ? 0.0L : 1 / roots_.back());
+  }
   levels_[0] = {1.0L};
   if (order == 0) return;
   // Degree 1 in the order (y, z, x): k = -1 is y, 0 is z, 1 is x.
@@ -29,12 +33,13 @@ long double AxisTurn::product(int axis, int n, int a, int b) const {
 }
 
 long double AxisTurn::new_entry(int n, int m, int column) const {
-  const long double divisor =
-      std::abs(column) == n ? (long double)(2 * n) * (2 * n - 1) : (long double)(n + column) * (n - column);
+  const auto root = [&](int k) { return roots_[std::size_t(k)]; };
   const int size = std::abs(m);
-  const long double u = std::sqrt((long double)((n + m) * (n - m)) / divisor);
-  const long double v = 0.5L * std::sqrt((m == 0 ? 2.0L : 1.0L) * (n + size - 1) * (n + size) / divisor) * (m == 0 ? -1.0L : 1.0L);
-  const long double w = m == 0 ? 0.0L : -0.5L * std::sqrt((long double)((n - size - 1) * (n - size)) / divisor);
+  const long double scale = std::abs(column) == n ? inverse_roots_[std::size_t(2 * n)] * inverse_roots_[std::size_t(2 * n - 1)]
+                                                  : inverse_roots_[std::size_t(n + column)] * inverse_roots_[std::size_t(n - column)];
+  const long double u = root(n + m) * root(n - m) * scale;
+  const long double v = (m == 0 ? -0.5L * root(2) : 0.5L) * root(n + size - 1) * root(n + size) * scale;
+  const long double w = m == 0 || size >= n - 1 ? 0.0L : -0.5L * root(n - size - 1) * root(n - size) * scale;
   long double sum = 0;
   if (u != 0) sum += u * product(0, n, m, column);
   if (v != 0) {
@@ -42,9 +47,9 @@ long double AxisTurn::new_entry(int n, int m, int column) const {
     if (m == 0)
       part = product(1, n, 1, column) + product(-1, n, -1, column);
     else if (m > 0)
-      part = m == 1 ? std::sqrt(2.0L) * product(1, n, 0, column) : product(1, n, m - 1, column) - product(-1, n, -m + 1, column);
+      part = m == 1 ? root(2) * product(1, n, 0, column) : product(1, n, m - 1, column) - product(-1, n, -m + 1, column);
     else
-      part = m == -1 ? std::sqrt(2.0L) * product(-1, n, 0, column) : product(1, n, m + 1, column) + product(-1, n, -m - 1, column);
+      part = m == -1 ? root(2) * product(-1, n, 0, column) : product(1, n, m + 1, column) + product(-1, n, -m - 1, column);
     sum += v * part;
   }
   if (w != 0)

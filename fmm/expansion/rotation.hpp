@@ -21,6 +21,7 @@ class AxisTurn {
   long double new_entry(int n, int m, int column) const;
 
   std::vector<std::vector<long double>> levels_;
+  std::vector<long double> roots_, inverse_roots_;   ///< of the integers
 };
 
 }  // namespace farsum

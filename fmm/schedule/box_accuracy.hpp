@@ -4,6 +4,7 @@
 
 #include "fmm/schedule/evaluation_job.hpp"
 #include "fmm/schedule/survey.hpp"
+#include "fmm/traversal/interactions.hpp"
 
 namespace farsum {
 
@@ -11,9 +12,15 @@ namespace farsum {
 struct BoxAccuracy {
   std::vector<float> strength;                           ///< by source box
   std::vector<float> bearable_potential, bearable_field;  ///< by target box
+  float base_field = 0, base_potential = 0;               ///< what the survey alone allows
 };
 
-/// For a tolerance. Where charges stand denser than elsewhere a target bears more: its own neighbours' field is that much larger.
-BoxAccuracy box_accuracy(const EvaluationJob& job, const AllowedError& allowed, double tolerance);
+/// Fraction of the bearable error of a target that one translation may take.
+inline constexpr double kErrorShare = 1.0 / 20;
+
+/// For a tolerance. Where the field is stronger than elsewhere a target bears more: that strength is estimated from the total charges
+/// of far boxes and from the density of the target's own neighbours.
+BoxAccuracy box_accuracy(const EvaluationJob& job, const NearLists& near, const DirectRule& rule, const AllowedError& allowed,
+                         double tolerance);
 
 }  // namespace farsum

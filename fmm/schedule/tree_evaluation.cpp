@@ -3,6 +3,7 @@
 #include <algorithm>
 #include <cmath>
 
+#include "fmm/schedule/order_bound.hpp"
 #include "fmm/schedule/stopwatch.hpp"
 #include "fmm/schedule/tree_work.hpp"
 
@@ -14,42 +15,6 @@ constexpr double kPairsPerTerm = 0.4;
 
 /// Order that uniform charges need, for decisions taken before the data are known.
 int typical_order(double tolerance) noexcept { return int(4.5 - 2 * std::log10(tolerance)); }
-
-/// Highest order that any translation of the lists asks for.
-int highest_order(const EvaluationJob& job, const NearLists& near, const DirectRule& rule, const BoxAccuracy& accuracy,
-                  const OrderChoice& orders) {
-  constexpr std::size_t kGrain = 256;
-  constexpr int kNearestSquared = 4;   // expansions of unequal boxes are judged as the nearest far pair
-  const std::vector<Box>&targets = job.targets.boxes, &sources = job.sources.boxes;
-  std::vector<int> highest((targets.size() + kGrain - 1) / kGrain, kMinOrder);
-  job.executor.for_each(targets.size(), kGrain, [&](std::size_t begin, std::size_t end, int) {
-    int& top = highest[begin / kGrain];
-    for (std::size_t b = std::max<std::size_t>(begin, 1); b < end; ++b) {
-      const Box& target = targets[b];
-      const double log_side = std::log2(job.targets.frame.box_side(target.level));
-      const auto consider = [&](std::uint32_t s, int squared, double side) {
-        top = std::max(top, orders.order(squared, side, accuracy.strength[s], accuracy.bearable_potential[b], accuracy.bearable_field[b]));
-      };
-      for_child_relations(
-          job.sources, near.begin(target.parent), near.end(target.parent), target, rule, [](const ListEntry&) {},
-          [&](std::uint32_t s, std::uint32_t) {
-            const auto square = [&](std::size_t axis) {
-              const int d = int(sources[s].place[axis] - target.place[axis]);
-              return d * d;
-            };
-            consider(s, square(0) + square(1) + square(2), log_side);
-          },
-          [&](std::uint32_t s, std::uint32_t) { consider(s, kNearestSquared, log_side); });
-      if (!target.leaf()) continue;
-      for_leaf_relations(
-          job.sources, near.begin(b), near.end(b), target, rule, [](std::uint32_t, std::uint32_t) {},
-          [&](std::uint32_t s, std::uint32_t) {
-            consider(s, kNearestSquared, std::log2(job.sources.frame.box_side(sources[s].level)));
-          });
-    }
-  });
-  return *std::max_element(highest.begin(), highest.end());
-}
 
 }  // namespace
 
@@ -93,9 +58,11 @@ void TreeEvaluator::evaluate(const EvaluationJob& job, double charge_rms, double
   {
     const Stopwatch watch(report.seconds.lists);
     job.checkpoint(Phase::lists, 0);
-    accuracy = box_accuracy(job, survey(job, charge_rms), tolerance);
     near = std::make_unique<NearLists>(job.sources, job.targets, plan.rule, job.executor);
-    plan.order = highest_order(job, *near, plan.rule, accuracy, orders_);
+    accuracy = box_accuracy(job, *near, plan.rule, survey(job, charge_rms), tolerance);
+    const OrderSurvey wanted = order_bound(job, *near, plan.rule, accuracy, orders_);
+    plan.order = wanted.order;
+    if (getenv("DBG")) fprintf(stderr, "pairs/charge %.2f mean order %.2f\n", wanted.pairs / double(job.targets.count), wanted.mean_order);
   }
   const auto passes = [&](auto real) {
     using Real = decltype(real);
