@@ -13,9 +13,6 @@
 namespace farsum::command {
 namespace {
 
-const double* data_or_null(const std::vector<double>& column) {
-  return column.empty() ? nullptr : column.data();
-}
 double* data_or_null(std::vector<double>& column) {
   return column.empty() ? nullptr : column.data();
 }
