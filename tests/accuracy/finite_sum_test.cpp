@@ -30,8 +30,8 @@ TEST_P(RingOfCharges, HasItsEnergyToTwelveDigits) {
     const Point field = outcome.result.field(i);
     square += std::pow(field[0] - force * ring.x[i], 2) + std::pow(field[1] - force * ring.y[i], 2) + std::pow(field[2], 2);
   }
-  // The places themselves carry 1e-16 of the radius: neighbours at 2 pi/N feel it N times stronger.
-  EXPECT_LE(std::sqrt(square / n) / force, 1e-12 + 2e-16 * n);
+  // Places are rounded by 1e-16: the fields of neighbours at 2 pi/N change by that times (N/2 pi)^3, the force is of order N.
+  EXPECT_LE(std::sqrt(square / n) / force, 1e-12 + 1e-17 * n * n);
 }
 
 INSTANTIATE_TEST_SUITE_P(Counts, RingOfCharges, testing::Values(2, 3, 4, 6, 10, 100, 1000, 10000, 100000));

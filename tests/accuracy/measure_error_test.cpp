@@ -39,7 +39,7 @@ TEST_P(MeasureError, NoticesSystematicFaults) {
   ASSERT_TRUE(outcome_.good()) << outcome_.message;
   const Result& good = outcome_.result;
   Result sign = good, swapped = good, scaled = good, shifted = good;
-  for (double& value : sign.field_y) value = -value;
+  for (double& value : sign.field_x) value = -value;
   std::swap(swapped.field_x, swapped.field_z);
   for (double& value : scaled.potential) value *= 1.00001;
   std::rotate(shifted.potential.begin(), shifted.potential.begin() + 1, shifted.potential.end());

@@ -27,9 +27,10 @@ void expect_output(const std::string& what, const OutputError& stated, const Nor
   EXPECT_LE(found.typical, 3 * t) << what;
   ASSERT_TRUE(stated.measured) << what;
   expect_stated((what + " rms").c_str(), stated.rms, found.rms, found.rounding, factor);
-  expect_stated((what + " typical").c_str(), stated.typical, found.typical, found.rounding, factor);
+  expect_stated((what + " typical").c_str(), stated.typical, found.typical, found.typical_rounding, factor);
   EXPECT_GE(stated.rms_upper, stated.rms) << what;
-  EXPECT_LE(stated.worst, 2 * found.worst + kRoundingUnits * found.rounding) << what << ": stated worst above the true worst";
+  EXPECT_LE(stated.worst, 2 * found.worst + kRoundingUnits * found.worst_rounding)
+      << what << ": stated worst above the true worst";
 }
 
 }  // namespace

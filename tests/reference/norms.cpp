@@ -44,12 +44,18 @@ Norms norms(const Values& errors, const Values& magnitudes, const Values& sizes,
   const long double scale = std::max(rms_of(magnitudes, weight), f0);
   result.scale = static_cast<double>(scale);
   if (scale == 0) return result;
-  Values relative(errors.size());
-  for (std::size_t i = 0; i < errors.size(); ++i) relative[i] = errors[i] / std::max(magnitudes[i], typical_size);
+  Values relative(errors.size()), relative_sums(errors.size());
+  for (std::size_t i = 0; i < errors.size(); ++i) {
+    const long double size = std::max(magnitudes[i], typical_size);
+    relative[i] = errors[i] / size;
+    relative_sums[i] = sums[i] / size;
+  }
   result.rms = static_cast<double>(rms_of(errors, weight) / scale);
   result.typical = static_cast<double>(rms_of(relative, weight));
   result.worst = static_cast<double>(*std::max_element(errors.begin(), errors.end()) / scale);
   result.rounding = static_cast<double>(0x1p-53L * rms_of(sums, weight) / scale);
+  result.typical_rounding = static_cast<double>(0x1p-53L * rms_of(relative_sums, weight));
+  result.worst_rounding = static_cast<double>(0x1p-53L * *std::max_element(sums.begin(), sums.end()) / scale);
   return result;
 }
 

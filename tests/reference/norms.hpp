@@ -15,8 +15,9 @@ namespace farsum::reference {
 
 struct Norms {
   double rms = 0, typical = 0, worst = 0;
-  double scale = 0;     ///< max(rms f, f0)
-  double rounding = 0;  ///< 2^-53 rms(S_i) / scale, S_i the sum of absolute terms: unit of rounding in the sums themselves
+  double scale = 0;  ///< max(rms f, f0)
+  /// 2^-53 times each norm of S_i, the sum of absolute terms, in place of e_i: unit of rounding in the sums themselves.
+  double rounding = 0, typical_rounding = 0, worst_rounding = 0;
 };
 
 struct Measured {
