@@ -1,5 +1,5 @@
 #pragma once
-// Order of each multipole-to-local translation: the smallest whose modelled error (medium/coulomb/truncation.hpp) stays within what
+// Order of each multipole-to-local translation: the smallest whose usual error (medium/coulomb/truncation.hpp) stays within what
 // the target box may bear, given the charges of the source box.
 #include <array>
 #include <cstdint>
@@ -10,16 +10,21 @@
 namespace farsum {
 
 /// Strength of a source box and error borne by a target box, both as base-2 logarithms in scaled units.
-/// strength: of sqrt(sum q^2 + c (sum q)^2). bearable_*: absolute error of one translation.
+/// strength_*: of sqrt(sum q^2 + c (sum q)^2). bearable_*: absolute error of one translation.
+/// spread: how much faster than for a uniformly filled cube the terms grow with the degree, octaves per degree, source plus target.
+struct TranslationDemand {
+  double strength_potential, strength_field, bearable_potential, bearable_field, spread;
+};
+
 class OrderChoice {
  public:
   OrderChoice();
 
   /// Order for boxes of side 2^log_side at squared centre distance 4..27 (in sides); kMaxOrder if even that is not enough.
-  int order(int squared_distance, double log_side, double strength, double bearable_potential, double bearable_field) const noexcept {
-    const Row& row = rows_[std::size_t(squared_distance)];
-    const int a = row.potential[slot(strength - log_side - bearable_potential)];
-    const int b = row.field[slot(strength - 2 * log_side - bearable_field)];
+  int order(int squared_distance, double log_side, const TranslationDemand& d) const noexcept {
+    const Row& row = rows_[std::size_t(squared_distance)][spread_slot(d.spread)];
+    const int a = row.potential[slot(d.strength_potential - log_side - d.bearable_potential)];
+    const int b = row.field[slot(d.strength_field - 2 * log_side - d.bearable_field)];
     return a > b ? a : b;
   }
 
@@ -34,7 +39,13 @@ class OrderChoice {
     const double at = octaves * kStepsPerOctave + 1;
     return at <= 0 ? 0 : at >= double(kSlots - 1) ? kSlots - 1 : std::size_t(at);
   }
-  std::array<Row, 28> rows_{};
+  static constexpr std::size_t kSpreads = 8;
+  static constexpr double kSpreadStep = 0.08;   ///< octaves per degree
+  static std::size_t spread_slot(double spread) noexcept {
+    const double at = spread / kSpreadStep + 0.5;
+    return at <= 0 ? 0 : at >= double(kSpreads - 1) ? kSpreads - 1 : std::size_t(at);
+  }
+  std::array<std::array<Row, kSpreads>, 28> rows_{};
 };
 
 /// Smallest order used; below it a translation costs hardly less.

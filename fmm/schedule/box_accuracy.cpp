@@ -10,11 +10,15 @@ namespace {
 
 /// Weight of the squared total charge of a box beside the sum of squares: errors of one-sign boxes add coherently, but neighbours in
 /// a smooth density cancel most of that. Calibrated on uniform cubes, shells, planes and lines of one sign, t = 1e-3..1e-12.
-constexpr double kCoherence = 0.1;
+constexpr double kPotentialCoherence = 1.0, kFieldCoherence = 0.1;
 /// Fraction of the nearest-neighbour field q / d^2 of a box (d = mean spacing) that its targets are sure to feel.
 constexpr double kLocalShare = 0.5;
 /// Fraction of the field of the far boxes that is counted on: near charges may cancel some of it.
 constexpr double kFarShare = 0.4;
+
+/// Power of the squared radius whose mean stands for the far terms, and octaves per degree for each octave of the radius; a box whose
+/// points all sit in one corner gets 0.3 octaves per degree.
+constexpr double kSpreadPower = 6, kSpreadFactor = 0.45;
 
 struct Moments {
   double sum = 0, squares = 0;
@@ -36,6 +40,44 @@ std::vector<Moments> charge_moments(const EvaluationJob& job) {
     moments[boxes[b].parent].squares += moments[b].squares;
   }
   return moments;
+}
+
+/// Where the points of a box stand: mean place and mean square distance from it, relative to the box's centre, in sides.
+struct Spread {
+  double weight = 0;
+  std::array<double, 3> place{};
+  double variance = 0.25;   // of a uniform cube
+};
+
+/// Octaves per degree by which far terms of a box grow faster than those of a uniformly filled one: points that crowd into a corner are
+/// farther from the centre. From the places of the children's points.
+std::vector<float> spreads(const Octree& tree) {
+  std::vector<Spread> spread(tree.boxes.size());
+  std::vector<float> result(tree.boxes.size(), 0.0f);
+  for (std::size_t b = tree.boxes.size(); b-- > 0;) {
+    const Box& box = tree.boxes[b];
+    Spread& own = spread[b];
+    own.weight = box.count();
+    if (box.leaf()) continue;
+    double second = 0, high = 0;
+    for (std::uint32_t c = box.first_child; c < box.first_child + box.children; ++c) {
+      const Spread& child = spread[c];
+      double square = 0;
+      for (std::size_t axis = 0; axis < 3; ++axis) {
+        const double at = 0.5 * child.place[axis] + (tree.boxes[c].octant >> axis & 1 ? 0.25 : -0.25);
+        own.place[axis] += child.weight / own.weight * at;
+        square += at * at;
+      }
+      square += child.variance / 4;
+      second += child.weight / own.weight * square;
+      high += child.weight / own.weight * std::pow(square, kSpreadPower);
+    }
+    own.variance = second;
+    for (double p : own.place) own.variance -= p * p;
+    const double radius2 = std::pow(high, 1.0 / kSpreadPower) / 0.25;   // 1 for a uniform cube
+    result[b] = float(kSpreadFactor * 0.5 * std::max(0.0, std::log2(radius2)));
+  }
+  return result;
 }
 
 float logarithm(double value) { return value > 0 ? float(std::log2(value)) : -std::numeric_limits<float>::infinity(); }
@@ -91,10 +133,16 @@ BoxAccuracy box_accuracy(const EvaluationJob& job, const NearLists& near, const 
   BoxAccuracy accuracy;
   accuracy.base_potential = logarithm(share * allowed.potential);
   accuracy.base_field = logarithm(share * allowed.field);
-  accuracy.strength.resize(moments.size());
-  for (std::size_t b = 0; b < moments.size(); ++b)
-    accuracy.strength[b] = logarithm(std::sqrt(moments[b].squares + kCoherence * moments[b].sum * moments[b].sum));
+  accuracy.strength_potential.resize(moments.size());
+  accuracy.strength_field.resize(moments.size());
+  for (std::size_t b = 0; b < moments.size(); ++b) {
+    const double square = moments[b].sum * moments[b].sum;
+    accuracy.strength_potential[b] = logarithm(std::sqrt(moments[b].squares + kPotentialCoherence * square));
+    accuracy.strength_field[b] = logarithm(std::sqrt(moments[b].squares + kFieldCoherence * square));
+  }
 
+  accuracy.source_spread = spreads(job.sources);
+  accuracy.target_spread = job.same_points() ? accuracy.source_spread : spreads(job.targets);
   const std::vector<Box>& boxes = job.targets.boxes;
   const float unlimited = std::numeric_limits<float>::infinity();
   accuracy.bearable_potential.assign(boxes.size(), unlimited);

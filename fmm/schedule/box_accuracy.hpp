@@ -2,6 +2,7 @@
 // Strength of every source box and error that every target box may bear: what the order of each translation is chosen from.
 #include <vector>
 
+#include "fmm/expansion/order_choice.hpp"
 #include "fmm/schedule/evaluation_job.hpp"
 #include "fmm/schedule/survey.hpp"
 #include "fmm/traversal/interactions.hpp"
@@ -10,13 +11,19 @@ namespace farsum {
 
 /// Base-2 logarithms, scaled units; see expansion/order_choice.hpp.
 struct BoxAccuracy {
-  std::vector<float> strength;                           ///< by source box
+  std::vector<float> strength_potential, strength_field;  ///< by source box
   std::vector<float> bearable_potential, bearable_field;  ///< by target box
+  std::vector<float> source_spread, target_spread;        ///< by box: octaves per degree, see TranslationDemand
   float base_field = 0, base_potential = 0;               ///< what the survey alone allows
+
+  TranslationDemand demand(std::size_t target, std::size_t source) const noexcept {
+    return {strength_potential[source], strength_field[source], bearable_potential[target], bearable_field[target],
+            source_spread[source] + target_spread[target]};
+  }
 };
 
 /// Fraction of the bearable error of a target that one translation may take.
-inline constexpr double kErrorShare = 1.0 / 20;
+inline constexpr double kErrorShare = 1.0 / 28;
 
 /// For a tolerance. Where the field is stronger than elsewhere a target bears more: that strength is estimated from the total charges
 /// of far boxes and from the density of the target's own neighbours.

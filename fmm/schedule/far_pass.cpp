@@ -64,7 +64,6 @@ class LevelTask {
     const Box& target = work_.job.targets.boxes[b];
     const std::vector<Box>& sources = work_.job.sources.boxes;
     const double log_side = std::log2(work_.job.targets.frame.box_side(target.level));
-    const double potential = work_.accuracy.bearable_potential[b], field = work_.accuracy.bearable_field[b];
     for_child_relations(
         work_.job.sources, work_.near.begin(target.parent), work_.near.end(target.parent), target, work_.plan.rule,
         [](const ListEntry&) {},
@@ -72,7 +71,7 @@ class LevelTask {
           const Box& source = sources[s];
           const BoxOffset offset{int(source.place[0] - target.place[0]), int(source.place[1] - target.place[1]),
                                  int(source.place[2] - target.place[2])};
-          const int order = work_.orders.order(offset.squared(), log_side, work_.accuracy.strength[s], potential, field);
+          const int order = work_.orders.order(offset.squared(), log_side, work_.accuracy.demand(b, s));
           bins_.add(offset_index(offset), std::min(order, work_.plan.order), s, std::uint32_t(b));
           work_.has_local[b] = 1;
         },

@@ -53,8 +53,7 @@ class Collector {
         job_.with_field ? std::exp2(2.0 * (accuracy_.bearable_field[b] - accuracy_.base_field))
                         : std::exp2(2.0 * (accuracy_.bearable_potential[b] - accuracy_.base_potential));
     const auto consider = [&](std::uint32_t s, int squared, double side) {
-      const int order =
-          orders_.order(squared, side, accuracy_.strength[s], accuracy_.bearable_potential[b], accuracy_.bearable_field[b]);
+      const int order = orders_.order(squared, side, accuracy_.demand(b, s));
       demand.add(order, target.count(), weight);
       return std::size_t(order);
     };

@@ -62,7 +62,6 @@ void TreeEvaluator::evaluate(const EvaluationJob& job, double charge_rms, double
     accuracy = box_accuracy(job, *near, plan.rule, survey(job, charge_rms), tolerance);
     const OrderSurvey wanted = order_bound(job, *near, plan.rule, accuracy, orders_);
     plan.order = wanted.order;
-    if (getenv("DBG")) fprintf(stderr, "pairs/charge %.2f mean order %.2f\n", wanted.pairs / double(job.targets.count), wanted.mean_order);
   }
   const auto passes = [&](auto real) {
     using Real = decltype(real);
