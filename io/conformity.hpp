@@ -1,5 +1,6 @@
 #pragma once
-// Holds a particle file against the rules of openPMD that matter here, and says all that is wrong instead of stopping at the first.
+// Holds a particle file against the rules of openPMD that matter here, and says all that is wrong instead of stopping at the
+// first.
 #include <string>
 #include <vector>
 

@@ -1,5 +1,6 @@
 #pragma once
-// Files that appear whole or not at all: written under a temporary name in the target's folder, flushed to the disk, then renamed.
+// Files that appear whole or not at all: written under a temporary name in the target's folder, flushed to the disk, then
+// renamed.
 #include <cstdint>
 #include <functional>
 #include <string>
@@ -29,8 +30,8 @@ class OutputFile {
   OutputFile& operator=(const OutputFile&) = delete;
 
   const std::string& temporary() const noexcept { return temporary_; }
-  /// fsync, rename onto the target, fsync of the folder. Without `overwrite` a target that came into being meanwhile is kept and
-  /// the call throws file_exists.
+  /// fsync, rename onto the target, fsync of the folder. Without `overwrite` a target that came into being meanwhile is kept
+  /// and the call throws file_exists.
   void commit();
 
  private:

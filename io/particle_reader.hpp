@@ -14,13 +14,14 @@ enum class Depth {
   contents,  ///< also Contents: reads positions, charges, momenta once by slabs
 };
 
-/// What `path` holds under `options`. Does not refuse a file without charge, with several iterations or with spread times: those
-/// show in the summary. Memory: a few MB. Throws the same errors as read_particles for everything that is damaged or unsafe.
+/// What `path` holds under `options`. Does not refuse a file without charge, with several iterations or with spread times:
+/// those show in the summary. Memory: a few MB. Throws the same errors as read_particles for everything that is damaged or
+/// unsafe.
 FileSummary inspect(const std::string& path, const ReadOptions& options = {}, Depth depth = Depth::contents);
 
-/// All live rows of the chosen iteration and species, SI, in file order. Peak memory: the set itself (32 B a row, 40 B with ids)
-/// and a few MB of slabs; the size is known, checked and compared with the limit before anything is allocated.
-/// Throws Error: file_not_found, file_not_readable, file_damaged, file_unsafe, format_unsupported, item_missing, item_wrong_type,
+/// All live rows of the chosen iteration and species, SI, in file order. Peak memory: the set itself (32 B a row, 40 B with
+/// ids) and a few MB of slabs; the size is known, checked and compared with the limit before anything is allocated. Throws
+/// Error: file_not_found, file_not_readable, file_damaged, file_unsafe, format_unsupported, item_missing, item_wrong_type,
 /// item_wrong_size, item_bad_value, not_finite (first bad row), unit_unknown, unit_wrong_dimension, choice_needed (several
 /// iterations), not_a_snapshot, memory_refused, out_of_memory, cancelled. Thread safe: HDF5 work is serialised inside.
 ParticleSet read_particles(const std::string& path, const ReadOptions& options = {});

@@ -1,6 +1,7 @@
 #pragma once
 // Point charges as read from a file: SI numbers, one contiguous array a quantity, all chosen species one after the other in the
-// order of the file. Rows of lost particles are left out; everything else of the file stays there and is copied when results are written.
+// order of the file. Rows of lost particles are left out; everything else of the file stays there and is copied when results
+// are written.
 #include <cstddef>
 #include <cstdint>
 #include <string>
@@ -20,24 +21,25 @@ struct SpeciesRange {
   std::size_t count() const noexcept { return end - begin; }
 };
 
-/// Columns that a set keeps only when there is no file to copy them from (delimited text) or when ReadOptions::load_motion asks.
-/// Each is empty or as long as the set. Values are those of one real particle, not of the macroparticle.
+/// Columns that a set keeps only when there is no file to copy them from (delimited text) or when ReadOptions::load_motion
+/// asks. Each is empty or as long as the set. Values are those of one real particle, not of the macroparticle.
 struct MotionColumns {
   std::vector<double> momentum_x, momentum_y, momentum_z;  ///< kg m/s
   std::vector<double> mass;                                ///< kg
 };
 
 struct ParticleSet {
-  std::string file;       ///< path as given by the caller
-  std::string format;     ///< "openPMD 1.1.0", "delimited text"
-  std::string iteration;  ///< name in the file, empty when it has none
+  std::string file;             ///< path as given by the caller
+  std::string format;           ///< "openPMD 1.1.0", "delimited text"
+  std::string iteration;        ///< name in the file, empty when it has none
+  bool allow_external = false;  ///< links to other files were followed, and are again when records are copied
   std::vector<SpeciesRange> species;
-  std::vector<double> x, y, z;      ///< m
-  std::vector<double> charge;       ///< C, of the whole macroparticle
-  std::vector<double> weighting;    ///< real particles for each row; only from text, else empty
-  std::vector<std::uint64_t> id;    ///< empty: the id of a row is its row number in its species
+  std::vector<double> x, y, z;    ///< m
+  std::vector<double> charge;     ///< C, of the whole macroparticle
+  std::vector<double> weighting;  ///< real particles for each row; only from text, else empty
+  std::vector<std::uint64_t> id;  ///< empty: the id of a row is its row number in its species
   MotionColumns motion;
-  std::vector<std::string> notes;   ///< what the reader decided or corrected, one sentence each
+  std::vector<std::string> notes;  ///< what the reader decided or corrected, one sentence each
 
   std::size_t size() const noexcept { return x.size(); }
   std::size_t lost() const noexcept;

@@ -27,11 +27,11 @@ struct ReadOptions {
   std::string length_unit, charge_unit;  ///< for text whose header has no units
   std::optional<double> charge_each;     ///< C of one real particle, where the file tells no charge
   NonSnapshot non_snapshot = NonSnapshot::refuse;
-  double advance_to = 0;                 ///< s
-  bool keep_lost = false;                ///< read lost particles too
-  bool load_motion = false;              ///< fill ParticleSet::motion
-  bool allow_external = false;           ///< follow links and storage to other files
-  std::uint64_t memory_limit = 0;        ///< bytes for the set's arrays; 0 = none. Larger: Error(memory_refused) before allocation
+  double advance_to = 0;           ///< s
+  bool keep_lost = false;          ///< read lost particles too
+  bool load_motion = false;        ///< fill ParticleSet::motion
+  bool allow_external = false;     ///< follow links and storage to other files
+  std::uint64_t memory_limit = 0;  ///< bytes for the set's arrays; 0 = none. Larger: Error(memory_refused) before allocation
   Hooks hooks;
 };
 

@@ -12,9 +12,9 @@ namespace farsum::io {
 
 /// Results of a file, SI, species after species. Columns that the file does not hold are empty.
 struct ResultTable {
-  ParticleSet particles;                         ///< the rows as the result file states them
-  std::vector<double> potential;                 ///< V
-  std::vector<double> field_x, field_y, field_z; ///< V/m
+  ParticleSet particles;                          ///< the rows as the result file states them
+  std::vector<double> potential;                  ///< V
+  std::vector<double> field_x, field_y, field_z;  ///< V/m
   RunAttributes run;
 
   std::size_t size() const noexcept { return particles.size(); }

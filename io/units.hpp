@@ -1,7 +1,7 @@
 #pragma once
 // Physical constants (CODATA 2022) and units with their dimensions. All io numbers are SI: m, C, kg, s, V, V/m, N, J.
-// Source of the values: P. J. Mohr, D. B. Newell, B. N. Taylor, E. Tiesinga, CODATA recommended values 2022, Rev. Mod. Phys. 97,
-// 025002 (2025). e, c, N_A, k_B are exact by the definition of the SI of 2019.
+// Source of the values: P. J. Mohr, D. B. Newell, B. N. Taylor, E. Tiesinga, CODATA recommended values 2022, Rev. Mod. Phys.
+// 97, 025002 (2025). e, c, N_A, k_B are exact by the definition of the SI of 2019.
 #include <array>
 #include <numbers>
 #include <string>
@@ -11,18 +11,18 @@ namespace farsum::io {
 
 inline constexpr std::string_view kConstantsName = "CODATA 2022";
 
-inline constexpr double kElementaryCharge = 1.602176634e-19;       ///< C, exact
-inline constexpr double kSpeedOfLight = 299792458.0;               ///< m/s, exact
-inline constexpr double kAvogadro = 6.02214076e23;                 ///< 1/mol, exact
-inline constexpr double kBoltzmann = 1.380649e-23;                 ///< J/K, exact
-inline constexpr double kVacuumPermittivity = 8.8541878188e-12;    ///< F/m, uncertainty 14 in the last two digits
-inline constexpr double kElectronMass = 9.1093837139e-31;          ///< kg, (28)
-inline constexpr double kProtonMass = 1.67262192595e-27;           ///< kg, (52)
-inline constexpr double kMuonMass = 1.883531627e-28;               ///< kg, (42)
-inline constexpr double kAtomicMass = 1.66053906892e-27;           ///< kg, (52)
-inline constexpr double kBohrRadius = 5.29177210544e-11;           ///< m, (82)
-inline constexpr double kHartree = 4.3597447222060e-18;            ///< J, (48)
-inline constexpr double kThermochemicalCalorie = 4.184;            ///< J, exact by convention
+inline constexpr double kElementaryCharge = 1.602176634e-19;     ///< C, exact
+inline constexpr double kSpeedOfLight = 299792458.0;             ///< m/s, exact
+inline constexpr double kAvogadro = 6.02214076e23;               ///< 1/mol, exact
+inline constexpr double kBoltzmann = 1.380649e-23;               ///< J/K, exact
+inline constexpr double kVacuumPermittivity = 8.8541878188e-12;  ///< F/m, uncertainty 14 in the last two digits
+inline constexpr double kElectronMass = 9.1093837139e-31;        ///< kg, (28)
+inline constexpr double kProtonMass = 1.67262192595e-27;         ///< kg, (52)
+inline constexpr double kMuonMass = 1.883531627e-28;             ///< kg, (42)
+inline constexpr double kAtomicMass = 1.66053906892e-27;         ///< kg, (52)
+inline constexpr double kBohrRadius = 5.29177210544e-11;         ///< m, (82)
+inline constexpr double kHartree = 4.3597447222060e-18;          ///< J, (48)
+inline constexpr double kThermochemicalCalorie = 4.184;          ///< J, exact by convention
 
 /// 1 / (4 pi eps0) in N m^2 / C^2: the potential in V is this times the engine's sum of q / r with q in C and r in m.
 inline constexpr double kCoulombConstant = 1.0 / (4.0 * std::numbers::pi * kVacuumPermittivity);

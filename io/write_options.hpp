@@ -14,8 +14,8 @@ struct WriteOptions {
   TemporaryHook on_temporary;
   Hooks hooks;
   std::string software = "farsum", software_version;  ///< root attributes
-  std::string author;                                  ///< root attribute; left out when empty
-  std::string comment;                                 ///< root attribute; left out when empty
+  std::string author;                                 ///< root attribute; left out when empty
+  std::string comment;                                ///< root attribute; left out when empty
 };
 
 }  // namespace farsum::io
