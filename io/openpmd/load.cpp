@@ -65,7 +65,7 @@ void check_snapshot(const OpenedFile& opened, const ReadOptions& options) {
 void check_charges_known(const OpenedFile& opened) {
   for (const OpenedSpecies& species : opened.species()) {
     if (species.columns->charge().known()) continue;
-    throw Error(ErrorCode::item_missing, "the charge is not known: " + species.columns->charge().problem(),
+    throw Error(ErrorCode::item_missing, fmt::format("the charge is not known: {}", species.columns->charge().problem()),
                 opened.file().path(), species.columns->place().group,
                 "state the charge of one particle with --particle-charge");
   }
@@ -270,7 +270,7 @@ ParticleSet load(const std::string& path, const ReadOptions& options) {
   check_snapshot(opened, options);
   ParticleSet set;
   set.file = path;
-  set.format = "openPMD " + opened.layout().version;
+  set.format = fmt::format("openPMD {}", opened.layout().version);
   set.iteration = opened.iteration();
   set.allow_external = options.allow_external;
   set.notes = opened.layout().notes;

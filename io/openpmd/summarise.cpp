@@ -86,10 +86,10 @@ FileSummary summarise(const std::string& path, const ReadOptions& options, bool 
   OpenedFile opened(path, options);
   FileSummary summary;
   summary.file = path;
-  summary.format = "openPMD " + opened.layout().version;
+  summary.format = fmt::format("openPMD {}", opened.layout().version);
   summary.iterations = opened.layout().iterations;
-  summary.length_unit = "m";
-  summary.charge_unit = "C";
+  summary.length_unit = std::string(kSi.length);
+  summary.charge_unit = std::string(kSi.charge);
   summary.notes = opened.layout().notes;
   if (!options.iteration && summary.iterations.size() > 1) return summary;
   opened.open_species();
