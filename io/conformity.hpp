@@ -4,18 +4,10 @@
 #include <string>
 #include <vector>
 
+#include "io/findings.hpp"
 #include "io/read_options.hpp"
 
 namespace farsum::io {
-
-enum class Severity { error, warning };
-
-struct Finding {
-  Severity severity = Severity::error;
-  std::string rule;     ///< stable word, for example "equal_lengths"
-  std::string item;     ///< path in the file
-  std::string message;  ///< what is wrong and what was expected
-};
 
 /// Checks every iteration and species: root attributes and their types, iteration attributes, record names, equal lengths,
 /// shape of constants, seven dimension exponents and the dimension of known records, unitSI, finite values, unique ids, patches

@@ -7,6 +7,7 @@
 #include <memory>
 #include <optional>
 
+#include "io/openpmd/charge.hpp"
 #include "io/openpmd/copy_records.hpp"
 #include "io/openpmd/layout.hpp"
 #include "io/openpmd/particle_output.hpp"
@@ -157,7 +158,13 @@ class InputRecords {
     }
     const auto records = openpmd::find_extra_records(*file_, *place, range.stored, nullptr);
     openpmd::copy_records(*file_, records, range, output);
-    return std::any_of(records.begin(), records.end(), [](const auto& record) { return record.name == "charge"; });
+    const auto holds = [&records](const char* name) {
+      return std::any_of(records.begin(), records.end(), [name](const auto& record) { return record.name == name; });
+    };
+    // The species type is no part of version 1.1, so what it says about the mass is written out.
+    const auto type = openpmd::particle_type(file_->text(place->group, "speciesType").value_or(""));
+    if (type && !holds("mass")) output.scalar_constant("mass", kMassStyle, type->mass);
+    return holds("charge");
   }
 
  private:

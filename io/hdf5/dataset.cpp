@@ -155,7 +155,8 @@ void Dataset::check_storage() const {
            fmt::format("declares {} numbers of {} bytes but {} bytes are stored", size_, type_bytes_, stored));
   }
   hsize_t chunks = 0;
-  check(H5Dget_num_chunks(dataset_.get(), H5S_ALL, &chunks), ErrorCode::file_damaged, file_, object_, "the chunks are damaged");
+  check(H5Dget_num_chunks(dataset_.get(), space_.get(), &chunks), ErrorCode::file_damaged, file_, object_,
+        "the chunks are damaged");
   const hsize_t expected = (size_ + chunk_ - 1) / chunk_;
   if (chunks != expected || stored == 0) {
     refuse(ErrorCode::file_damaged,

@@ -25,7 +25,7 @@ std::uint64_t count_live(const OpenedFile& opened) {
     const std::uint64_t rows = species.columns->rows();
     if (species.lost.all) {
       throw Error(ErrorCode::item_bad_value, fmt::format("none of the {} particles is alive (no particleStatus is 1)", rows),
-                  opened.file().path(), species.columns->place().group + "/particleStatus",
+                  opened.file().path(), hdf5::join(species.columns->place().group, "particleStatus"),
                   "read them all the same with --keep-lost");
     }
     total += rows - species.lost.rows.size();
@@ -58,7 +58,7 @@ void check_snapshot(const OpenedFile& opened, const ReadOptions& options) {
   throw Error(ErrorCode::not_a_snapshot,
               fmt::format("the particles were recorded at different times ({:.9g} s to {:.9g} s), so they are no snapshot",
                           span.first, span.last),
-              opened.file().path(), opened.species().front().columns->place().group + "/time",
+              opened.file().path(), hdf5::join(opened.species().front().columns->place().group, "time"),
               "move all to one time T in seconds with --advance-to T, or take the places as they stand with --as-snapshot");
 }
 
@@ -165,7 +165,7 @@ class Loader {
     throw Error(ErrorCode::item_bad_value,
                 fmt::format("states {:.9g} C, but the charges found ({}) add up to {:.9g} C", stated,
                             columns.charge().description(), all_rows),
-                opened_.file().path(), group + "/@totalCharge", "correct the attribute or the weights");
+                opened_.file().path(), group + "@totalCharge", "correct the attribute or the weights");
   }
 
   void load_ids(const OpenedSpecies& species, const SpeciesRange& range) {

@@ -39,7 +39,7 @@ TimeSpan time_span(const Species& species, const LostRows& lost, const Hooks& ho
     const auto [low, high] = std::minmax_element(times.begin(), times.begin() + static_cast<std::ptrdiff_t>(kept));
     if (!std::isfinite(*low) || !std::isfinite(*high)) {
       throw Error(ErrorCode::not_finite, fmt::format("a time in the rows {} to {} is not finite", start, start + count - 1), {},
-                  species.place().group + "/time", {});
+                  hdf5::join(species.place().group, "time"), {});
     }
     span.add({true, *low, *high});
     report_progress(hooks, 0, 1);

@@ -4,7 +4,7 @@
 #include <vector>
 
 #include "fmm/error.hpp"
-#include "io/conformity.hpp"
+#include "io/findings.hpp"
 #include "io/hdf5/input_file.hpp"
 #include "io/openpmd/layout.hpp"
 

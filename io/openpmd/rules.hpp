@@ -3,7 +3,8 @@
 #include <string>
 #include <vector>
 
-#include "io/conformity.hpp"
+#include "io/findings.hpp"
+#include "io/read_options.hpp"
 
 namespace farsum::io::openpmd {
 

@@ -27,7 +27,7 @@ RANKS = {
         "farsum_c": 9,
     },
     # Headers directly in io/ are public and of rank 0, their sources stand above the folders: one folder a file format.
-    "io": {"hdf5": 1, "openpmd": 2, "text": 2},
+    "io": {"hdf5": 1, "summary": 1, "openpmd": 2, "text": 2},
 }
 # Which other parts a part may see at all.
 PARTS_SEEN = {
