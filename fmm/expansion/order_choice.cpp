@@ -21,9 +21,12 @@ double allowance(int squared_distance) {
   return 0;
 }
 
+/// Beyond this degree corners dominate a uniform cube as well: a box with all points in a corner is worse by a constant factor only.
+constexpr int kSpreadDegrees = 16;
+
 std::uint8_t smallest_order(double octaves, double spread, const float (&row)[kMaxOrder + 1]) {
   for (int p = kMinOrder; p <= kMaxOrder; ++p)
-    if (double(row[p]) - spread * p >= octaves) return std::uint8_t(rounded(p));
+    if (double(row[p]) - spread * std::min(p, kSpreadDegrees) >= octaves) return std::uint8_t(rounded(p));
   return std::uint8_t(kMaxOrder);
 }
 

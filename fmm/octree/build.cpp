@@ -59,10 +59,15 @@ class Builder {
     return interleave(part[0], part[1], part[2]);
   }
 
+  std::uint64_t first_key(std::uint32_t i) const noexcept {
+    const auto part = [&](int axis) { return std::uint32_t(frame_.coarse_lattice(axis, coordinate(axis, i))); };
+    return interleave(part(0), part(1), part(2));
+  }
+
   void make_first_keys() {
     executor_.for_each(points_.count, kGrain, [&](std::size_t begin, std::size_t end, int) {
       for (std::size_t i = begin; i < end; ++i) {
-        key_[i] = key_below(std::uint32_t(i), 0, {});
+        key_[i] = first_key(std::uint32_t(i));
         index_[i] = std::uint32_t(i);
       }
     });

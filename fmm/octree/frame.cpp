@@ -19,10 +19,12 @@ double two_sum(double a, double b, double& error) noexcept {
 
 }  // namespace
 
-Frame::Frame(const Bounds& bounds, double side) : side_(side), inverse_unit_(double(kUnits) / side) {
+Frame::Frame(const Bounds& bounds, double side, double middle) : side_(side) {
+  units_per_length_.high = double(kUnits) / side;
+  units_per_length_.low = std::fma(-units_per_length_.high, side, double(kUnits)) / side;
   for (std::size_t axis = 0; axis < 3; ++axis) {
     const double low = bounds.low[axis], high = bounds.high[axis];
-    corner_[axis] = bounds.empty ? 0.0 : low - (side - (high - low)) / 2;
+    corner_[axis] = bounds.empty ? 0.0 : low - (side * middle - (high - low) / 2);
   }
 }
 
@@ -37,11 +39,21 @@ std::array<double, 3> Frame::padding_place() const noexcept {
 std::int64_t Frame::lattice(int axis, double value) const noexcept {
   double low;
   const double high = two_sum(value, -corner_[std::size_t(axis)], low);
-  const double scaled = high * inverse_unit_, whole = std::floor(scaled);
+  const double scaled = high * units_per_length_.high, whole = std::floor(scaled);
   if (!(whole >= 0)) return 0;
   if (whole >= double(kUnits)) return kUnits - 1;
-  const double rest = (scaled - whole) + low * inverse_unit_;
+  const double rest = (scaled - whole) + (std::fma(high, units_per_length_.high, -scaled) + high * units_per_length_.low +
+                                          low * units_per_length_.high);
   return std::clamp<std::int64_t>(std::int64_t(whole) + std::int64_t(std::floor(rest)), 0, kUnits - 1);
+}
+
+std::int64_t Frame::coarse_lattice(int axis, double value) const noexcept {
+  constexpr double kCoarse = 1.0 / double(std::int64_t{1} << (kMaxLevel - kKeyLevels)), kFace = 1e-6;
+  const double scaled = (value - corner_[std::size_t(axis)]) * (units_per_length_.high * kCoarse), whole = std::floor(scaled);
+  const double inside = scaled - whole;
+  if (inside > kFace && inside < 1 - kFace && whole >= 0 && whole < double(std::int64_t{1} << kKeyLevels))
+    return std::int64_t(whole);
+  return lattice(axis, value) >> (kMaxLevel - kKeyLevels);
 }
 
 std::array<DoubleDouble, 3> Frame::centre(const BoxCoordinates& box, int level) const noexcept {

@@ -23,8 +23,8 @@ struct DoubleDouble {
 class Frame {
  public:
   Frame() = default;
-  /// Cube of the given side around the middle of the bounds; the side must exceed their extent.
-  Frame(const Bounds& bounds, double side);
+  /// Cube of the given side in which the middle of the bounds lies at the fraction `middle` of the side; it must hold the bounds.
+  Frame(const Bounds& bounds, double side, double middle = 0.5);
 
   double side() const noexcept { return side_; }
   double box_side(int level) const noexcept;
@@ -32,14 +32,17 @@ class Frame {
   /// A place far outside the cube, for padding sources.
   std::array<double, 3> padding_place() const noexcept;
 
-  /// Lattice coordinate of a scaled coordinate at level kMaxLevel, clamped into the cube. Monotone in `value`.
+  /// Lattice coordinate of a scaled coordinate at level kMaxLevel, clamped into the cube; good to 2^-100 of the side.
   std::int64_t lattice(int axis, double value) const noexcept;
+  /// The same at level kKeyLevels, quickly: only near a face of a box does it take the exact way.
+  std::int64_t coarse_lattice(int axis, double value) const noexcept;
   /// Centre of a box, exact enough that relative positions keep their digits in boxes of any level.
   std::array<DoubleDouble, 3> centre(const BoxCoordinates& box, int level) const noexcept;
 
  private:
   std::array<double, 3> corner_{};
-  double side_ = 1, inverse_unit_ = 1;  ///< 2^kMaxLevel / side
+  double side_ = 1;
+  DoubleDouble units_per_length_{1, 0};   ///< 2^kMaxLevel / side
 };
 
 /// Interleaves the low 21 bits of three coordinates: bits ... z1 y1 x1 z0 y0 x0.

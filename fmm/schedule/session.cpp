@@ -9,6 +9,7 @@
 #include "fmm/base/cpu.hpp"
 #include "fmm/error.hpp"
 #include "fmm/kernels/dispatch.hpp"
+#include "fmm/octree/root_choice.hpp"
 #include "fmm/schedule/close_pairs.hpp"
 #include "fmm/schedule/direct.hpp"
 #include "fmm/schedule/merged.hpp"
@@ -20,6 +21,8 @@ namespace farsum {
 namespace {
 
 constexpr int kAttempts = 2;
+/// Leaf capacity for a wanted mean number of charges in a leaf: fluctuations of an even density must not divide boxes any more.
+constexpr double kCapacityPerFill = 2.5;
 
 Options checked(Options options) {
   if (!(options.tolerance >= 1e-13 && options.tolerance <= 1e-2))
@@ -126,7 +129,7 @@ void Session::prepare_tree(Executor& executor) {
       scaled.low[axis] = scale(bounds_.low[axis]);
       scaled.high[axis] = scale(bounds_.high[axis]);
     }
-    tree_ = build_octree(positions_, scale, Frame(scaled, 1.0), {leaf_capacity()}, executor, ledger_);
+    tree_ = build_octree(positions_, scale, choose_frame(scaled, positions_.count, leaf_fill()), {leaf_capacity()}, executor, ledger_);
     if (options_.coincident == Coincident::skip)
       merge_coincident(executor);
     else
@@ -198,7 +201,7 @@ void Session::evaluate_at(const PointsView& targets, Output outputs, const Resul
       all.low[axis] = scale(all.low[axis]);
       all.high[axis] = scale(all.high[axis]);
     }
-    const Frame frame(all, 1.0);
+    const Frame frame = choose_frame(all, std::max(positions_.count, targets.count), leaf_fill());
     source_tree = build_octree(positions_, scale, frame, {leaf_capacity()}, executor, ledger_);
     target_tree = build_octree(targets, scale, frame, {leaf_capacity()}, executor, ledger_);
     charges = gather_charges(charges_, units.scale_charge(), *source_tree, executor, ledger_);
@@ -231,6 +234,8 @@ void Session::run_attempts(const Prepared& prepared, const ResultView& result, E
 std::uint32_t Session::leaf_capacity() const noexcept {
   return options_.leaf_capacity > 0 ? std::uint32_t(options_.leaf_capacity) : default_leaf_capacity(options_.tolerance);
 }
+
+double Session::leaf_fill() const noexcept { return double(leaf_capacity()) / kCapacityPerFill; }
 
 EvaluationPlan Session::choose_plan(const Prepared& prepared, double tolerance) const noexcept {
   EvaluationPlan plan;

@@ -60,6 +60,7 @@ class Session {
 
   void run_attempts(const Prepared& prepared, const ResultView& result, Executor& executor, const std::function<void()>& after_pass);
   std::uint32_t leaf_capacity() const noexcept;
+  double leaf_fill() const noexcept;
   double charge_rms(const Units& units) const noexcept;
   EvaluationPlan choose_plan(const Prepared& prepared, double tolerance) const noexcept;
   void run_passes(const Prepared& prepared, const EvaluationPlan& plan, const ResultView& result, Executor& executor);

@@ -1,6 +1,7 @@
 #include "fmm/verification/identities.hpp"
 
 #include <algorithm>
+#include <array>
 #include <cmath>
 #include <vector>
 
@@ -31,9 +32,20 @@ struct Sums {
 
 class Pass {
  public:
-  explicit Pass(const IdentityInput& input)
+  Pass(const IdentityInput& input, Executor& executor)
       : in_(input), potential_(-input.potential_unit.exponent()), field_(-input.field_unit.exponent()) {
-    for (std::size_t axis = 0; axis < 3; ++axis) middle_[axis] = (in_.length(in_.bounds.low[axis]) + in_.length(in_.bounds.high[axis])) / 2;
+    const std::size_t n = in_.charges.count, pieces = (n + kGrain - 1) / kGrain;
+    std::vector<std::array<long double, 3>> parts(pieces);
+    executor.for_each(n, kGrain, [&](std::size_t begin, std::size_t end, int) {
+      const double* const bases[3] = {in_.positions.x, in_.positions.y, in_.positions.z};
+      for (std::size_t i = begin; i < end; ++i)
+        for (std::size_t axis = 0; axis < 3; ++axis)
+          parts[begin / kGrain][axis] += in_.length(bases[axis][std::ptrdiff_t(i) * in_.positions.stride]);
+    });
+    std::array<long double, 3> sum{};
+    for (const std::array<long double, 3>& part : parts)
+      for (std::size_t axis = 0; axis < 3; ++axis) sum[axis] += part[axis];
+    for (std::size_t axis = 0; axis < 3; ++axis) middle_[axis] = double(sum[axis] / (long double)(n));
   }
 
   Sums over(std::size_t begin, std::size_t end) const {
@@ -93,7 +105,7 @@ double ratio(double value, double scale) { return scale > 0 ? value / scale : 0;
 IdentityResult check_identities(const IdentityInput& input, Executor& executor) {
   const std::size_t n = input.charges.count, pieces = (n + kGrain - 1) / kGrain;
   std::vector<Sums> parts(pieces);
-  const Pass pass(input);
+  const Pass pass(input, executor);
   executor.for_each(n, kGrain, [&](std::size_t begin, std::size_t end, int) { parts[begin / kGrain] = pass.over(begin, end); });
   Sums sums;
   for (const Sums& part : parts) sums.join(part);
