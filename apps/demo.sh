@@ -26,7 +26,7 @@ farsum_install build demo
 farsum_say "Building the command (Release, $(farsum_jobs) jobs)"
 farsum_configure "$farsum_build_root/release" -DCMAKE_BUILD_TYPE=Release -DFARSUM_BUILD_APPS=ON -DFARSUM_BUILD_TESTS=OFF \
   -DFARSUM_BUILD_BENCH=OFF
-farsum_build "$farsum_build_root/release" farsum
+farsum_build "$farsum_build_root/release" farsum_command
 
 mkdir -p "$output"
 cd "$output"
