@@ -21,6 +21,8 @@ namespace farsum {
 namespace {
 
 constexpr int kAttempts = 2;
+/// What a retry aims at, as a fraction of the tolerance.
+constexpr double kRetryMargin = 0.3;
 /// Leaf capacity for a wanted mean number of charges in a leaf: fluctuations of an even density must not divide boxes any more.
 constexpr double kCapacityPerFill = 2.5;
 
@@ -86,6 +88,7 @@ void Session::update_charges(const ChargesView& charges) {
   Executor executor(options_.threads);
   charge_sums_ = checked_charge_sums(charges, executor);
   charges_ = charges;
+  aimed_tolerance_ = options_.tolerance;
   units_.charge = binary_exponent(charge_sums_.max_abs);
   ordered_charges_ = {};
   if (merged_) merged_->update_charges(charges);
@@ -211,7 +214,7 @@ void Session::evaluate_at(const PointsView& targets, Output outputs, const Resul
 
 void Session::run_attempts(const Prepared& prepared, const ResultView& result, Executor& executor,
                            const std::function<void()>& after_pass) {
-  double tolerance = options_.tolerance;
+  double tolerance = same_points(prepared) ? aimed_tolerance_ : options_.tolerance;
   for (int attempt = 1; attempt <= kAttempts; ++attempt) {
     report_.plan.attempts = attempt;
     {
@@ -225,7 +228,8 @@ void Session::run_attempts(const Prepared& prepared, const ResultView& result, E
     if (accept_or_retry(attempt)) break;
     const double missed = std::max({report_.error.potential.rms, report_.error.field.rms, report_.error.potential.typical / 3,
                                     report_.error.field.typical / 3});
-    tolerance *= std::max(1e-2, 0.5 * options_.tolerance / missed);
+    tolerance *= std::max(1e-3, kRetryMargin * options_.tolerance / missed);
+    if (same_points(prepared)) aimed_tolerance_ = tolerance;
   }
   report_.seconds.solve += report_.seconds.tree;
   report_.memory.peak_bytes = ledger_.peak();
@@ -277,6 +281,8 @@ void Session::refuse_close_pairs(const Prepared& prepared, const ResultView&) {
   throw_target_on_charge(positions_, closest.target, closest.source, closest.squared == 0);
 }
 
+bool Session::same_points(const Prepared& prepared) noexcept { return &prepared.sources == &prepared.targets; }
+
 bool Session::verification_wanted() const noexcept {
   return options_.verification == Verification::every || (options_.verification == Verification::first && !verified_);
 }
@@ -286,7 +292,7 @@ void Session::verify(const Prepared& prepared, const ResultView& result, Executo
   if (options_.on_progress) options_.on_progress(Phase::verify, 0);
   const VerificationOutcome outcome =
       verify_result({prepared.sources, prepared.charges.data(), charge_rms(prepared.units), prepared.targets, nearest_squared_.data(), result,
-                     prepared.units.potential(), prepared.units.field()},
+                     prepared.units.potential(), prepared.units.field(), report_.plan.order},
                     options_.samples, options_.tolerance, kernels_, executor);
   report_.error = outcome.measure;
   report_.notes.field_median = prepared.units.field()(outcome.field_median);
@@ -340,6 +346,7 @@ ErrorMeasure Session::measure(Output outputs, const ResultView& result) {
   if (merged_) return merged_->measure(outputs, wanted);
   nearest_squared_ = {ledger_, positions_.count};
   nearest_in_leaves(*tree_, nearest_squared_.data(), executor);
+  report_.plan.order = typical_order(options_.tolerance);
   verify({*tree_, ordered_charges_, *tree_, units_}, wanted, executor);
   return report_.error;
 }

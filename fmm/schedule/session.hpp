@@ -69,6 +69,7 @@ class Session {
   bool accept_or_retry(int attempt);
   void check_results(const ResultView& result, Executor& executor);
   bool verification_wanted() const noexcept;
+  static bool same_points(const Prepared& prepared) noexcept;
 
   Options options_;
   CpuTarget cpu_target_;
@@ -86,7 +87,8 @@ class Session {
   AlignedArray<double> nearest_squared_;
   TreeEvaluator tree_evaluator_;
   std::unique_ptr<Merged> merged_;
-  bool verified_ = false;   ///< for Verification::first
+  bool verified_ = false;          ///< for Verification::first
+  double aimed_tolerance_ = 0;     ///< tightened where a first attempt missed; kept until charges or places change
 };
 
 }  // namespace farsum

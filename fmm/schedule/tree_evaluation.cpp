@@ -13,10 +13,9 @@ namespace {
 /// Pairs that projecting or evaluating one charge costs, per coefficient.
 constexpr double kPairsPerTerm = 0.4;
 
-/// Order that uniform charges need, for decisions taken before the data are known.
-int typical_order(double tolerance) noexcept { return int(4.5 - 2 * std::log10(tolerance)); }
-
 }  // namespace
+
+int typical_order(double tolerance) noexcept { return int(4.5 - 2 * std::log10(tolerance)); }
 
 std::uint32_t default_leaf_capacity(double tolerance) noexcept {
   const double digits = -std::log10(tolerance);

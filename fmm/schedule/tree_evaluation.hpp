@@ -10,6 +10,8 @@
 
 namespace farsum {
 
+/// Order that uniform charges need, for decisions taken before the data are known.
+int typical_order(double tolerance) noexcept;
 /// Leaf capacity that suits a tolerance: balances near pairs against translations. See DEVELOPERS.md for the measurement.
 std::uint32_t default_leaf_capacity(double tolerance) noexcept;
 /// True if the far field of this tolerance is computed in single precision.

@@ -14,6 +14,24 @@ std::uint64_t mix(std::uint64_t v) {
   return v ^ v >> 31;
 }
 
+/// Number in [0, 1) for a slice.
+double chance(std::uint64_t slice) { return double(mix(slice) >> 11) * 0x1p-53; }
+
+/// Draws one of the places [begin, end) with probability (1/n + importance / sum) / 2.
+Sample draw(const std::uint32_t* begin, const std::uint32_t* end, std::uint64_t slice,
+            const std::function<double(std::uint32_t)>& importance) {
+  const double n = double(end - begin);
+  std::vector<double> probability;
+  double sum = 0;
+  for (const std::uint32_t* place = begin; place != end; ++place) sum += probability.emplace_back(importance(*place));
+  for (double& p : probability) p = sum > 0 ? 0.5 / n + 0.5 * p / sum : 1 / n;
+  double reached = 0;
+  const double wanted = chance(slice);
+  std::size_t i = 0;
+  while (i + 1 < probability.size() && (reached += probability[i]) <= wanted) ++i;
+  return {begin[i], 1 / probability[i], false};
+}
+
 /// Moves the `wanted` entries that come first in `before` to the front of [begin, end); ties by place.
 template <class Before>
 void take_first(std::vector<std::uint32_t>::iterator begin, std::vector<std::uint32_t>::iterator end, std::size_t wanted,
@@ -24,7 +42,7 @@ void take_first(std::vector<std::uint32_t>::iterator begin, std::vector<std::uin
 }  // namespace
 
 std::vector<Sample> choose_samples(std::uint32_t n, std::size_t wanted, const std::function<double(std::uint32_t)>& strength,
-                                   const double* nearest_squared) {
+                                   const double* nearest_squared, const std::function<double(std::uint32_t)>& importance) {
   std::vector<Sample> samples;
   if (n <= wanted) {
     for (std::uint32_t place = 0; place < n; ++place) samples.push_back({place, 1.0, true});
@@ -45,8 +63,7 @@ std::vector<Sample> choose_samples(std::uint32_t n, std::size_t wanted, const st
   const std::size_t rest = n - 2 * quarter;
   for (std::size_t s = 0; s < slices; ++s) {
     const std::size_t begin = rest * s / slices, end = rest * (s + 1) / slices;
-    if (begin == end) continue;
-    samples.push_back({places[2 * quarter + begin + mix(s) % (end - begin)], double(end - begin), false});
+    if (begin != end) samples.push_back(draw(&places[2 * quarter] + begin, &places[2 * quarter] + end, s, importance));
   }
   return samples;
 }

@@ -1,6 +1,8 @@
 #pragma once
 // Which targets are verified. Uniform sampling alone misses the error of heavy-tailed fields, so the targets of largest field and
-// of nearest neighbour are always taken; the rest is one target per slice of the tree order. The choice is a pure function of the data.
+// of nearest neighbour are always taken; the rest is one target per slice of the tree order. At high orders most of the error of an
+// expansion sits in the few targets near the corners of their leaf: a slice draws half by chance and half by that, and every square
+// is weighted by the inverse of its probability. The choice is a pure function of the data.
 #include <cstdint>
 #include <functional>
 #include <vector>
@@ -15,8 +17,9 @@ struct Sample {
 };
 
 /// About `wanted` samples of n targets (all with weight 1 if n <= wanted): a quarter of largest strength, a quarter of smallest
-/// nearest_squared, the rest from slices. strength(place) is |E|^2, or |phi| where no field was asked for.
+/// nearest_squared, the rest from slices. strength(place) is |E|^2, or |phi| where no field was asked for; importance(place) is
+/// proportional to the error expected there (0 everywhere: slices draw by chance alone).
 std::vector<Sample> choose_samples(std::uint32_t n, std::size_t wanted, const std::function<double(std::uint32_t)>& strength,
-                                   const double* nearest_squared);
+                                   const double* nearest_squared, const std::function<double(std::uint32_t)>& importance);
 
 }  // namespace farsum

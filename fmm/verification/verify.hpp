@@ -16,6 +16,7 @@ struct VerifiedResult {
   const double* nearest_squared;   ///< per target in tree order
   ResultView values;
   PowerOfTwo potential_unit, field_unit;   ///< scaled value -> caller's value
+  int order;                       ///< of the expansions; 0 if the result was summed directly
 };
 
 struct VerificationOutcome {
