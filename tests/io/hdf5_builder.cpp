@@ -39,7 +39,9 @@ Hdf5Builder::Hdf5Builder(const std::string& path, Open open)
   must(file_ >= 0, path);
 }
 
-Hdf5Builder::~Hdf5Builder() { H5Fclose(file_); }
+Hdf5Builder::~Hdf5Builder() {
+  H5Fclose(file_);
+}
 
 void Hdf5Builder::group(const std::string& path) {
   for (std::size_t end = path.find('/', 1);; end = path.find('/', end + 1)) {
@@ -53,14 +55,16 @@ void Hdf5Builder::group(const std::string& path) {
   }
 }
 
-void Hdf5Builder::remove(const std::string& path) { must(H5Ldelete(file_, path.c_str(), H5P_DEFAULT) >= 0, path); }
+void Hdf5Builder::remove(const std::string& path) {
+  must(H5Ldelete(file_, path.c_str(), H5P_DEFAULT) >= 0, path);
+}
 
 void Hdf5Builder::remove_attribute(const std::string& path, const std::string& name) {
   must(H5Adelete_by_name(file_, path.c_str(), name.c_str(), H5P_DEFAULT) >= 0, path + "@" + name);
 }
 
-void Hdf5Builder::attribute(const std::string& path, const std::string& name, hid_t stored, hid_t memory, hsize_t count, bool scalar,
-                            const void* value) {
+void Hdf5Builder::attribute(const std::string& path, const std::string& name, hid_t stored, hid_t memory, hsize_t count,
+                            bool scalar, const void* value) {
   if (H5Aexists_by_name(file_, path.c_str(), name.c_str(), H5P_DEFAULT) > 0) remove_attribute(path, name);
   const hid_t space = scalar ? H5Screate(H5S_SCALAR) : H5Screate_simple(1, &count, nullptr);
   const hid_t made = H5Acreate_by_name(file_, path.c_str(), name.c_str(), stored, space, H5P_DEFAULT, H5P_DEFAULT, H5P_DEFAULT);
@@ -133,7 +137,8 @@ void Hdf5Builder::constant(const std::string& path, double value, std::uint64_t 
   number(path, "unitSI", 1);
 }
 
-void Hdf5Builder::record(const std::string& path, const std::vector<double>& dimension, int macro_weighted, double weighting_power) {
+void Hdf5Builder::record(const std::string& path, const std::vector<double>& dimension, int macro_weighted,
+                         double weighting_power) {
   numbers(path, "unitDimension", dimension);
   number(path, "timeOffset", 0);
   const std::uint32_t flag = static_cast<std::uint32_t>(macro_weighted);
@@ -209,9 +214,12 @@ void write_bunch_style(Hdf5Builder& file, const std::string& group, std::size_t 
       const std::string path = base + record + axis;
       const bool place = record[1] == 'p';
       file.column(path, place ? places : momentum);
-      if (place) file.integer(path, "unitSI", 1);
-      else file.number(path, "unitSI", 5.344285992678308e-28);
-      file.integers(path, "unitDimension", place ? std::vector<std::int64_t>{1, 0, 0, 0, 0, 0, 0} : std::vector<std::int64_t>{1, 1, -1, 0, 0, 0, 0});
+      if (place)
+        file.integer(path, "unitSI", 1);
+      else
+        file.number(path, "unitSI", 5.344285992678308e-28);
+      file.integers(path, "unitDimension",
+                    place ? std::vector<std::int64_t>{1, 0, 0, 0, 0, 0, 0} : std::vector<std::int64_t>{1, 1, -1, 0, 0, 0, 0});
       file.variable_text(path, "unitSymbol", "m");
     }
   }

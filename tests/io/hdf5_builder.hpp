@@ -46,7 +46,8 @@ class Hdf5Builder {
   void numbers(const std::string& path, const std::string& name, const std::vector<double>& values);
   void integers(const std::string& path, const std::string& name, const std::vector<std::int64_t>& values);
 
-  void column(const std::string& path, const std::vector<double>& values, hid_t stored = H5T_IEEE_F64LE, hid_t properties = H5P_DEFAULT);
+  void column(const std::string& path, const std::vector<double>& values, hid_t stored = H5T_IEEE_F64LE,
+              hid_t properties = H5P_DEFAULT);
   void integer_column(const std::string& path, const std::vector<std::int64_t>& values, hid_t stored = H5T_STD_U64LE);
   /// A data set of `rows` declared elements, nothing written.
   void declared(const std::string& path, hsize_t rows, hid_t properties = H5P_DEFAULT);
@@ -56,7 +57,8 @@ class Hdf5Builder {
   void record(const std::string& path, const std::vector<double>& dimension, int macro_weighted, double weighting_power);
 
  private:
-  void attribute(const std::string& path, const std::string& name, hid_t stored, hid_t memory, hsize_t count, bool scalar, const void* value);
+  void attribute(const std::string& path, const std::string& name, hid_t stored, hid_t memory, hsize_t count, bool scalar,
+                 const void* value);
   hid_t file_;
 };
 
@@ -72,7 +74,8 @@ void write_species(Hdf5Builder& file, const std::string& group, std::size_t rows
 void write_bunch(const std::string& path, std::size_t rows);
 inline const std::string kIons = "/data/0/particles/ions";
 
-/// Species in the style of bunch files: weight as positive charge (1e-15 C), speciesType electron, totalCharge, particleStatus 1.
+/// Species in the style of bunch files: weight as positive charge (1e-15 C), speciesType electron, totalCharge,
+/// particleStatus 1.
 void write_bunch_style(Hdf5Builder& file, const std::string& group, std::size_t rows);
 
 template <class Change>

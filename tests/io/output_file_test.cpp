@@ -17,7 +17,9 @@ namespace {
 using io_test::expect_error;
 using io_test::Folder;
 
-void write_text(const std::string& path, const std::string& text) { std::ofstream(path) << text; }
+void write_text(const std::string& path, const std::string& text) {
+  std::ofstream(path) << text;
+}
 
 std::string read_text(const std::string& path) {
   std::ifstream stream(path);
@@ -27,7 +29,8 @@ std::string read_text(const std::string& path) {
 TEST(OutputFile, CommitPutsTheTemporaryInPlace) {
   const Folder folder;
   std::vector<std::string> told;
-  OutputFile file(check_output_target(folder.file("a.h5"), false, 0), false, [&](const std::string& path) { told.push_back(path); });
+  OutputFile file(check_output_target(folder.file("a.h5"), false, 0), false,
+                  [&](const std::string& path) { told.push_back(path); });
   write_text(file.temporary(), "new");
   file.commit();
   EXPECT_EQ(read_text(folder.file("a.h5")), "new");
@@ -78,7 +81,8 @@ TEST(OutputFile, FollowsASymbolicLinkOnce) {
   EXPECT_TRUE(std::filesystem::is_symlink(folder.file("link.h5")));
   EXPECT_EQ(read_text(folder.file("real.h5")), "new");
   std::filesystem::create_symlink("link.h5", folder.file("second.h5"));
-  expect_error(ErrorCode::file_not_writable, "link to a symbolic link", [&] { check_output_target(folder.file("second.h5"), true, 0); });
+  expect_error(ErrorCode::file_not_writable, "link to a symbolic link",
+               [&] { check_output_target(folder.file("second.h5"), true, 0); });
 }
 
 TEST(OutputFile, RefusesTheInputUnderAnyName) {
@@ -93,7 +97,8 @@ TEST(OutputFile, RefusesFoldersAndDevicesAndMissingFolders) {
   const Folder folder;
   expect_error(ErrorCode::file_not_writable, "is a folder", [&] { check_output_target(folder.path(), true, 0); });
   expect_error(ErrorCode::file_not_writable, "no regular file", [] { check_output_target("/dev/null", true, 0); });
-  expect_error(ErrorCode::file_not_writable, "folder cannot be used", [&] { check_output_target(folder.file("none/a.h5"), true, 0); });
+  expect_error(ErrorCode::file_not_writable, "folder cannot be used",
+               [&] { check_output_target(folder.file("none/a.h5"), true, 0); });
 }
 
 TEST(OutputFile, RefusesAFolderWithoutPermission) {
@@ -105,7 +110,8 @@ TEST(OutputFile, RefusesAFolderWithoutPermission) {
 
 TEST(OutputFile, RefusesMoreThanTheDiskHolds) {
   const Folder folder;
-  expect_error(ErrorCode::disk_full, "MiB left", [&] { check_output_target(folder.file("a.h5"), false, std::uint64_t{1} << 60); });
+  expect_error(ErrorCode::disk_full, "MiB left",
+               [&] { check_output_target(folder.file("a.h5"), false, std::uint64_t{1} << 60); });
 }
 
 }  // namespace

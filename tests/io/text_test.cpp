@@ -41,8 +41,10 @@ TEST_F(Text, ReadsUnitsFromTheHeader) {
 
 TEST_F(Text, AcceptsEverySeparatorCommentsAndLineEnds) {
   for (const std::string separator : {",", ";", "\t", "  ", " ; "}) {
-    std::string text = "# made by hand, (see below\n\n# x[m]" + separator + "y[m]" + separator + "z[m]" + separator + "q (C)\r\n";
-    text += "1" + separator + "2" + separator + "3" + separator + "4\r\n# note\n5" + separator + "6" + separator + "7" + separator + "8";
+    std::string text =
+        "# made by hand, (see below\n\n# x[m]" + separator + "y[m]" + separator + "z[m]" + separator + "q (C)\r\n";
+    text += "1" + separator + "2" + separator + "3" + separator + "4\r\n# note\n5" + separator + "6" + separator + "7" +
+            separator + "8";
     const ParticleSet set = read(text);
     ASSERT_EQ(set.size(), 2u) << separator;
     EXPECT_EQ(set.charge[1], 8.0) << separator;
@@ -50,8 +52,9 @@ TEST_F(Text, AcceptsEverySeparatorCommentsAndLineEnds) {
 }
 
 TEST_F(Text, TakesUnitsWithBlanksMomentumMassWeightAndId) {
-  const ParticleSet set = read("z[m] x[m] y[m] px[kg m/s] py [MeV/c] pz[kg m/s] mass[u] weight q[e] id extra\n"
-                               "3 1 2 1 1 1 4 10 1 77 word\n");
+  const ParticleSet set = read(
+      "z[m] x[m] y[m] px[kg m/s] py [MeV/c] pz[kg m/s] mass[u] weight q[e] id extra\n"
+      "3 1 2 1 1 1 4 10 1 77 word\n");
   EXPECT_EQ(set.x[0], 1.0);
   EXPECT_DOUBLE_EQ(set.charge[0], 10 * kElementaryCharge);
   EXPECT_DOUBLE_EQ(set.motion.momentum_y[0], 5.344285992678308e-22);
@@ -102,7 +105,9 @@ TEST_F(Text, ParticleChargeServesWhereNoColumnDoes) {
   EXPECT_EQ(read("x[m] y[m] z[m]\n1 2 3\n", options).charge[0], -kElementaryCharge);
 }
 
-TEST_F(Text, HeaderWithoutRowsIsAnEmptySet) { EXPECT_EQ(read("x[m] y[m] z[m] q[C]\n").size(), 0u); }
+TEST_F(Text, HeaderWithoutRowsIsAnEmptySet) {
+  EXPECT_EQ(read("x[m] y[m] z[m] q[C]\n").size(), 0u);
+}
 
 TEST_F(Text, SummaryHasCountsAndContents) {
   const FileSummary summary = inspect(write("x[m] y[m] z[m] q[C]\n1 2 3 4\n-1 0 3 -5\n"));
