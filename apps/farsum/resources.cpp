@@ -47,12 +47,12 @@ std::vector<std::string> group_folders(const std::string& controller, bool secon
   while (std::getline(in, line)) {
     const std::size_t first = line.find(':'), second = line.find(':', first + 1);
     if (first == std::string::npos || second == std::string::npos) continue;
-    const std::string names = "," + line.substr(first + 1, second - first - 1) + ",";
-    if (second_version ? names == ",," : names.find("," + controller + ",") != std::string::npos)
+    const std::string names = fmt::format(",{},", line.substr(first + 1, second - first - 1));
+    if (second_version ? names == ",," : names.find(fmt::format(",{},", controller)) != std::string::npos)
       path = line.substr(second + 1);
   }
   if (path.find("..") != std::string::npos) path.clear();  // a group outside this view: only the visible root counts
-  const std::string root = second_version ? "/sys/fs/cgroup" : "/sys/fs/cgroup/" + controller;
+  const std::string root = second_version ? "/sys/fs/cgroup" : fmt::format("/sys/fs/cgroup/{}", controller);
   std::vector<std::string> folders;
   while (path.size() > 1) {
     folders.push_back(root + path);
