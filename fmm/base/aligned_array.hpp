@@ -27,6 +27,26 @@ class MemoryLedger {
   std::atomic<std::uint64_t> current_{0}, peak_{0};
 };
 
+/// Counts memory that an array of another kind holds, for as long as this lives.
+class LedgerShare {
+ public:
+  LedgerShare() = default;
+  LedgerShare(MemoryLedger& ledger, std::uint64_t bytes) : ledger_(&ledger), bytes_(bytes) { ledger.add(bytes); }
+  LedgerShare(LedgerShare&& other) noexcept : ledger_(std::exchange(other.ledger_, nullptr)), bytes_(other.bytes_) {}
+  LedgerShare& operator=(LedgerShare&& other) noexcept {
+    std::swap(ledger_, other.ledger_);
+    std::swap(bytes_, other.bytes_);
+    return *this;
+  }
+  ~LedgerShare() {
+    if (ledger_) ledger_->remove(bytes_);
+  }
+
+ private:
+  MemoryLedger* ledger_ = nullptr;
+  std::uint64_t bytes_ = 0;
+};
+
 /// Memory aligned to a cache line; large blocks to huge pages, which the system is asked to use (page faults and address look-ups
 /// cost a third of a solve of 10^6 charges with small pages). Throws std::bad_alloc.
 void* allocate_pages(std::size_t bytes);

@@ -19,10 +19,15 @@ AxisTurn::AxisTurn(int order, long double cosine, long double sine) {
 }
 
 void AxisTurn::fill_level(int n) {
-  levels_[std::size_t(n)].assign(std::size_t((2 * n + 1) * (2 * n + 1)), 0.0L);
+  std::vector<long double>& level = levels_[std::size_t(n)];
+  level.assign(std::size_t((2 * n + 1) * (2 * n + 1)), 0.0L);
+  // The transpose is the rotation by the opposite angle, which a reflection of x undoes: D(column, m) = (-1)^(m + column) D(m, column).
   for (int m = -n; m <= n; ++m)
-    for (int column = -n; column <= n; ++column)
-      if ((m < 0) == (column < 0)) levels_[std::size_t(n)][slot(n, m, column)] = new_entry(n, m, column);
+    for (int column = m < 0 ? -n : 0; column <= m; ++column) {
+      const long double value = new_entry(n, m, column);
+      level[slot(n, m, column)] = value;
+      level[slot(n, column, m)] = (m + column) % 2 == 0 ? value : -value;
+    }
 }
 
 /// The P of the recursion: entries of degree n - 1 combined with those of degree 1.

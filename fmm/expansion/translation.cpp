@@ -46,20 +46,32 @@ void TranslationTables<Real>::make_turns(Executor& executor) {
     const BoxOffset o = offset_of(index);
     if (!used(o)) continue;
     const auto [place, fresh] = turns_.try_emplace({o.z, o.x * o.x + o.y * o.y});
-    if (fresh) wanted.push_back(&*place);
+    if (fresh && o.z >= 0) wanted.push_back(&*place);
   }
+  // A direction below the plane z = 0 is its mirror image above, with mirrored harmonics: reflecting z turns R_nk into
+  // (-1)^(n+k) R_nk, reflecting x turns the cosine part into (-1)^k R_nk and the sine part into (-1)^(k+1) R_nk.
   executor.for_each(wanted.size(), 1, [&](std::size_t i, std::size_t, int) {
     const auto [z, rho2] = wanted[i]->first;
     const long double length = std::sqrt((long double)(z * z + rho2));
     const AxisTurn axis_turn(order_, z / length, std::sqrt((long double)(rho2)) / length);
-    Turn& turn = wanted[i]->second;
-    for (int n = 0; n <= order_; ++n) {
-      append_blocks(turn.forward, n + 1, n + 1, [&](int row, int column) { return axis_turn.entry(n, row, column); });
-      append_blocks(turn.forward, n, n, [&](int row, int column) { return axis_turn.entry(n, -1 - row, -1 - column); });
-      append_blocks(turn.back, n + 1, n + 1, [&](int row, int column) { return axis_turn.entry(n, column, row); });
-      append_blocks(turn.back, n, n, [&](int row, int column) { return axis_turn.entry(n, -1 - column, -1 - row); });
-    }
+    append_turn(wanted[i]->second, [&](int n, int row, int column) { return axis_turn.entry(n, row, column); });
+    if (z == 0) return;
+    append_turn(turns_.at({-z, rho2}), [&](int n, int row, int column) {
+      const bool odd = (n + row + column + (row < 0 ? 1 : 0)) % 2 != 0;
+      return odd ? -axis_turn.entry(n, row, column) : axis_turn.entry(n, row, column);
+    });
   });
+}
+
+template <class Real>
+template <class Entry>
+void TranslationTables<Real>::append_turn(Turn& turn, const Entry& entry) {
+  for (int n = 0; n <= order_; ++n) {
+    append_blocks(turn.forward, n + 1, n + 1, [&](int row, int column) { return entry(n, row, column); });
+    append_blocks(turn.forward, n, n, [&](int row, int column) { return entry(n, -1 - row, -1 - column); });
+    append_blocks(turn.back, n + 1, n + 1, [&](int row, int column) { return entry(n, column, row); });
+    append_blocks(turn.back, n, n, [&](int row, int column) { return entry(n, -1 - column, -1 - row); });
+  }
 }
 
 template <class Real>

@@ -51,6 +51,8 @@ class TranslationTables {
     std::vector<Real> in, out;
   };
   void make_turns(Executor& executor);
+  template <class Entry>
+  void append_turn(Turn& turn, const Entry& entry);
   void add_direction(Direction& direction, const BoxOffset& o);
   void make_scales();
   void make_shifts();

@@ -124,7 +124,7 @@ inline void exact_sums_of(const ExactSums& arguments, std::size_t i) {
     const VecDouble dx = a.tx[i] - load(a.sx + j), dy = a.ty[i] - load(a.sy + j), dz = a.tz[i] - load(a.sz + j);
     const VecDouble r2 = dx * dx + (dy * dy + dz * dz);
     const VecDouble others_r2 = keep ? r2 : splat(kFarSquared);
-    nearest = min(nearest, others_r2);
+    nearest = min(nearest, others_r2 > 0.0 ? others_r2 : splat(kFarSquared));
     VecDouble w = reciprocal_root<RootAccuracy::full>(others_r2);
     w = others_r2 > 0.0 ? w : VecDouble{};
     w = keep ? w : VecDouble{};

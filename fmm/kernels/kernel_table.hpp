@@ -25,7 +25,7 @@ struct PairSums {
 enum class RootAccuracy { fast, full };
 
 /// Sums for error measurement: terms rounded once or twice each, added with compensation. Per target i:
-///   potential[i], field[i] as PairSums; potential_scale[i] = sum |q_j| / r, field_scale[i] = sum |q_j| / r^2.
+///   potential[i], field[i] as PairSums with zero distances left out (also of nearest_squared); potential_scale[i] = sum |q_j| / r, field_scale[i] = sum |q_j| / r^2.
 struct ExactSums {
   PairSums sums;
   double *potential_scale, *field_scale;

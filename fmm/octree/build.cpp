@@ -37,6 +37,7 @@ class Builder {
     key_other_ = {};
     index_other_ = {};
     tree_.index = std::move(index_);
+    tree_.boxes_share = LedgerShare(ledger_, tree_.boxes.capacity() * sizeof(Box));
     gather_points();
     return std::move(tree_);
   }

@@ -30,6 +30,7 @@ struct Octree {
   AlignedArray<std::uint32_t> index;        ///< caller's index of the point at each place of the tree order
   AlignedArray<double> x, y, z;             ///< scaled coordinates in tree order, padded to whole vectors
   std::vector<Box> boxes;                   ///< boxes[0] is the root, if there are points
+  LedgerShare boxes_share;                  ///< counts the boxes
   std::vector<std::uint32_t> level_begin;   ///< first box of each level, and the end: depth() + 2 entries
 
   int depth() const noexcept { return int(level_begin.size()) - 2; }

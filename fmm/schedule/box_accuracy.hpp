@@ -16,6 +16,9 @@ struct BoxAccuracy {
   std::vector<float> source_spread, target_spread;        ///< by box: octaves per degree, see TranslationDemand
   float base_field = 0, base_potential = 0;               ///< what the survey alone allows
 
+  std::size_t bytes() const noexcept {
+    return sizeof(float) * (3 * strength_potential.size() + 3 * bearable_field.size());
+  }
   TranslationDemand demand(std::size_t target, std::size_t source) const noexcept {
     return {strength_potential[source], strength_field[source], bearable_potential[target], bearable_field[target],
             source_spread[source] + target_spread[target]};

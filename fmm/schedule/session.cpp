@@ -12,6 +12,7 @@
 #include "fmm/octree/root_choice.hpp"
 #include "fmm/schedule/close_pairs.hpp"
 #include "fmm/schedule/direct.hpp"
+#include "fmm/schedule/memory_plan.hpp"
 #include "fmm/schedule/merged.hpp"
 #include "fmm/schedule/stopwatch.hpp"
 #include "fmm/verification/identities.hpp"
@@ -74,7 +75,7 @@ void Session::set_charges(const PointsView& positions, const ChargesView& charge
   Executor executor(options_.threads);
   tree_.reset();
   merged_.reset();
-  verified_ = false;
+  verified_ = verified_targets_ = false;
   bounds_ = checked_bounds(positions, "position", executor);
   positions_ = positions;
   units_.length = binary_exponent(bounds_.extent());
@@ -161,6 +162,7 @@ void Session::evaluate(Output outputs, const ResultView& result) {
   if (trivial() || positions_.count < 2) return write_zeros(positions_.count, wanted);
   Executor executor(options_.threads);
   report_.threads = executor.threads();
+  predict_memory(positions_.count, true);
   prepare_tree(executor);
   if (merged_) return evaluate_merged(outputs, wanted);
   const Prepared prepared{*tree_, ordered_charges_, *tree_, units_};
@@ -195,6 +197,7 @@ void Session::evaluate_at(const PointsView& targets, Output outputs, const Resul
   all.join(bounds_);
   Units units = units_;
   units.length = binary_exponent(all.extent());
+  predict_memory(targets.count, false);
   std::optional<Octree> source_tree, target_tree;
   AlignedArray<double> charges;
   {
@@ -223,9 +226,9 @@ void Session::run_attempts(const Prepared& prepared, const ResultView& result, E
     }
     refuse_close_pairs(prepared, result);
     after_pass();
-    if (!verification_wanted()) break;
+    if (!verification_wanted(prepared)) break;
     verify(prepared, result, executor);
-    if (accept_or_retry(attempt)) break;
+    if (accept_or_retry(prepared, attempt)) break;
     const double missed = std::max({report_.error.potential.rms, report_.error.field.rms, report_.error.potential.typical / 3,
                                     report_.error.field.typical / 3});
     tolerance *= std::max(1e-3, kRetryMargin * options_.tolerance / missed);
@@ -239,16 +242,25 @@ std::uint32_t Session::leaf_capacity() const noexcept {
   return options_.leaf_capacity > 0 ? std::uint32_t(options_.leaf_capacity) : default_leaf_capacity(options_.tolerance);
 }
 
+void Session::predict_memory(std::size_t targets, bool same_points) {
+  const MemoryQuery query{positions_.count, targets, same_points,
+                          chosen_method(positions_.count, targets) == Method::tree, options_.tolerance, leaf_fill()};
+  report_.memory.predicted_bytes = predicted_bytes(query);
+  refuse_above(report_.memory.predicted_bytes, options_.memory_limit);
+}
+
+Method Session::chosen_method(std::size_t sources, std::size_t targets) const noexcept {
+  if (options_.method != Method::automatic) return options_.method;
+  return std::sqrt(double(sources) * double(targets)) < direct_break_even(options_.tolerance) ? Method::direct : Method::tree;
+}
+
 double Session::leaf_fill() const noexcept { return double(leaf_capacity()) / kCapacityPerFill; }
 
 EvaluationPlan Session::choose_plan(const Prepared& prepared, double tolerance) const noexcept {
   EvaluationPlan plan;
   plan.tolerance = tolerance;
   plan.root_accuracy = tolerance >= 1e-11 ? kernels::RootAccuracy::fast : kernels::RootAccuracy::full;
-  plan.method = options_.method;
-  if (options_.method != Method::automatic) return plan;
-  const double n = std::sqrt(double(prepared.sources.count) * double(prepared.targets.count));
-  plan.method = n < direct_break_even(options_.tolerance) ? Method::direct : Method::tree;
+  plan.method = chosen_method(prepared.sources.count, prepared.targets.count);
   return plan;
 }
 
@@ -283,8 +295,9 @@ void Session::refuse_close_pairs(const Prepared& prepared, const ResultView&) {
 
 bool Session::same_points(const Prepared& prepared) noexcept { return &prepared.sources == &prepared.targets; }
 
-bool Session::verification_wanted() const noexcept {
-  return options_.verification == Verification::every || (options_.verification == Verification::first && !verified_);
+bool Session::verification_wanted(const Prepared& prepared) const noexcept {
+  const bool done = same_points(prepared) ? verified_ : verified_targets_;
+  return options_.verification == Verification::every || (options_.verification == Verification::first && !done);
 }
 
 void Session::verify(const Prepared& prepared, const ResultView& result, Executor& executor) {
@@ -298,14 +311,14 @@ void Session::verify(const Prepared& prepared, const ResultView& result, Executo
   report_.notes.field_median = prepared.units.field()(outcome.field_median);
 }
 
-bool Session::accept_or_retry(int attempt) {
+bool Session::accept_or_retry(const Prepared& prepared, int attempt) {
   const ErrorMeasure& error = report_.error;
   const bool carried = error.floor_tolerance <= options_.tolerance;
   if (!carried && !options_.best_effort)
     throw Error(ErrorCode::tolerance_unreachable,
                 "tolerance " + short_number(options_.tolerance) + " cannot be reached with these charges in double precision",
                 "reachable here: " + short_number(error.floor_tolerance) + "; ask for that, or for best effort");
-  verified_ = error.met;
+  (same_points(prepared) ? verified_ : verified_targets_) = error.met;
   if (error.met || attempt == kAttempts || !carried) {
     if (!error.met && !options_.best_effort)
       throw Error(ErrorCode::accuracy_not_reached,

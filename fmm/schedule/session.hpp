@@ -61,14 +61,16 @@ class Session {
   void run_attempts(const Prepared& prepared, const ResultView& result, Executor& executor, const std::function<void()>& after_pass);
   std::uint32_t leaf_capacity() const noexcept;
   double leaf_fill() const noexcept;
+  Method chosen_method(std::size_t sources, std::size_t targets) const noexcept;
+  void predict_memory(std::size_t targets, bool same_points);
   double charge_rms(const Units& units) const noexcept;
   EvaluationPlan choose_plan(const Prepared& prepared, double tolerance) const noexcept;
   void run_passes(const Prepared& prepared, const EvaluationPlan& plan, const ResultView& result, Executor& executor);
   void refuse_close_pairs(const Prepared& prepared, const ResultView& result);
   void verify(const Prepared& prepared, const ResultView& result, Executor& executor);
-  bool accept_or_retry(int attempt);
+  bool accept_or_retry(const Prepared& prepared, int attempt);
   void check_results(const ResultView& result, Executor& executor);
-  bool verification_wanted() const noexcept;
+  bool verification_wanted(const Prepared& prepared) const noexcept;
   static bool same_points(const Prepared& prepared) noexcept;
 
   Options options_;
@@ -87,7 +89,7 @@ class Session {
   AlignedArray<double> nearest_squared_;
   TreeEvaluator tree_evaluator_;
   std::unique_ptr<Merged> merged_;
-  bool verified_ = false;          ///< for Verification::first
+  bool verified_ = false, verified_targets_ = false;   ///< for Verification::first: at charges, at other targets
   double aimed_tolerance_ = 0;     ///< tightened where a first attempt missed; kept until charges or places change
 };
 

@@ -75,10 +75,11 @@ AllowedError survey(const EvaluationJob& job, double charge_rms) {
   for (const Value& v : values_at(job, places)) {
     potentials.push_back(std::abs(v.potential));
     fields.push_back(std::sqrt(v.x * v.x + v.y * v.y + v.z * v.z));
-    const double nearest = std::max(v.nearest, 0x1p-120);   // a coincident pair is refused later
-    potential_floors.push_back(charge_rms / std::sqrt(nearest));
-    field_floors.push_back(charge_rms / nearest);
+    if (v.nearest == 0) continue;   // a target on a charge, or a pair that is refused later
+    potential_floors.push_back(charge_rms / std::sqrt(v.nearest));
+    field_floors.push_back(charge_rms / v.nearest);
   }
+  if (field_floors.empty()) potential_floors = field_floors = {0.0};
   return {allowed(potentials, median(potential_floors)), allowed(fields, median(field_floors))};
 }
 

@@ -3,6 +3,7 @@
 #include <algorithm>
 #include <cmath>
 
+#include "fmm/schedule/memory_plan.hpp"
 #include "fmm/schedule/order_bound.hpp"
 #include "fmm/schedule/stopwatch.hpp"
 #include "fmm/schedule/tree_work.hpp"
@@ -61,7 +62,10 @@ void TreeEvaluator::evaluate(const EvaluationJob& job, double charge_rms, double
     accuracy = box_accuracy(job, *near, plan.rule, survey(job, charge_rms), tolerance);
     const OrderSurvey wanted = order_bound(job, *near, plan.rule, accuracy, orders_);
     plan.order = wanted.order;
+    report.memory.predicted_bytes = predicted_bytes(job.sources, job.targets, plan.order, plan.single_precision);
+    refuse_above(report.memory.predicted_bytes, job.options.memory_limit);
   }
+  const LedgerShare lists_share(job.ledger, near->bytes() + accuracy.bytes());
   const auto passes = [&](auto real) {
     using Real = decltype(real);
     std::unique_ptr<TreeWork<Real>> work;

@@ -24,7 +24,7 @@ struct ExactTarget {
 struct ExactValue {
   double potential = 0, field[3] = {0, 0, 0};
   double potential_scale = 0, field_scale = 0;  ///< sum |q| / r, sum |q| / r^2
-  double nearest_squared = 0;                   ///< to the nearest source that is not the target itself
+  double nearest_squared = 0;                   ///< to the nearest source at another place than the target
 };
 
 std::vector<ExactValue> exact_values(const SourceArrays& sources, std::span<const ExactTarget> targets,
