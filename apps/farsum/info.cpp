@@ -112,7 +112,7 @@ void say_outlook(Run& run, const io::FileSummary& summary) {
 void say_summary(Run& run, const io::FileSummary& summary) {
   run.say(fmt::format("{}: {}, {}{}", printable(summary.file), printable(summary.format), counted(summary.live(), "charge"),
                       summary.lost() > 0 ? fmt::format(" live, {} lost", grouped(summary.lost())) : std::string()));
-  if (!summary.iterations.empty())
+  if (!joined(summary.iterations).empty())
     run.say(fmt::format(
         "iterations        {}{}", printable(joined(summary.iterations), 500),
         summary.iteration.empty() || summary.iterations.size() == 1 ? "" : "; shown: " + printable(summary.iteration)));

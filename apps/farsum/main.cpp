@@ -2,10 +2,13 @@
 #include <fmt/format.h>
 
 #include <CLI/CLI.hpp>
+#include <algorithm>
 #include <cstdio>
 #include <exception>
 #include <string>
+#include <vector>
 
+#include "apps/farsum/display.hpp"
 #include "apps/farsum/run.hpp"
 #include "apps/farsum/signals.hpp"
 #include "apps/farsum/subcommands.hpp"
@@ -37,13 +40,31 @@ std::string chosen_subcommand(const CLI::App& app) {
   return chosen.empty() ? std::string() : chosen.front()->get_name();
 }
 
+std::vector<std::string> subcommand_names(const CLI::App& app) {
+  std::vector<std::string> names;
+  for (const CLI::App* sub : app.get_subcommands([](const CLI::App*) { return true; })) names.push_back(sub->get_name());
+  return names;
+}
+
+/// What is wrong with the first word, or nothing: the library only says that a subcommand is missing.
+std::string first_word_fault(const CLI::App& app, int argc, char** argv) {
+  const std::vector<std::string> names = subcommand_names(app);
+  const std::string choice = farsum::command::joined(names);
+  if (argc < 2) return fmt::format("a subcommand is missing; choose one of {}", choice);
+  const std::string word = argv[1];
+  if (word.rfind('-', 0) == 0 || std::find(names.begin(), names.end(), word) != names.end()) return {};
+  return fmt::format("there is no subcommand '{}'; choose one of {}", word, choice);
+}
+
 int parse_and_run(CLI::App& app, int argc, char** argv, const int& status) {
+  const std::string fault = first_word_fault(app, argc, argv);
+  if (!fault.empty()) return report_usage_error(fault, {});
   try {
     app.parse(argc, argv);
     return status;
   } catch (const CLI::CallForHelp&) {
     const auto chosen = app.get_subcommands();
-    fmt::print("{}", chosen.empty() ? app.help() : chosen.front()->help());
+    fmt::print("{}", chosen.empty() ? app.help() : chosen.front()->help("farsum"));
   } catch (const CLI::CallForVersion&) {
     fmt::print("farsum {}\n", FARSUM_VERSION);
   } catch (const CLI::ParseError& error) {

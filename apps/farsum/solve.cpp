@@ -158,11 +158,15 @@ void SolveJob::fill_report() {
 
 void SolveJob::write() {
   const Clock writing;
-  const auto data = [](const std::vector<double>& column) { return column.empty() ? nullptr : column.data(); };
-  const io::ResultColumns columns{data(evaluation_.potential),
-                                  data(evaluation_.field_x),
-                                  data(evaluation_.field_y),
-                                  data(evaluation_.field_z),
+  // A set without particles has its records too: empty ones.
+  static constexpr double kNothing = 0;
+  const auto data = [this](const std::vector<double>& column, Output output) {
+    return !has(wanted_.engine(), output) ? nullptr : column.empty() ? &kNothing : column.data();
+  };
+  const io::ResultColumns columns{data(evaluation_.potential, Output::potential),
+                                  data(evaluation_.field_x, Output::field),
+                                  data(evaluation_.field_y, Output::field),
+                                  data(evaluation_.field_z, Output::field),
                                   coulomb_constant_,
                                   wanted_.potential,
                                   wanted_.field,

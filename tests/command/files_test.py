@@ -86,25 +86,25 @@ class FullDisk(CommandCase):
     def setUp(self):
         super().setUp()
         self.small = tempfile.mkdtemp(prefix="farsum-small-")
-        done = subprocess.run(["mount", "-t", "tmpfs", "-o", "size=256k", "tmpfs", self.small], capture_output=True, check=False)
+        done = subprocess.run(["mount", "-t", "tmpfs", "-o", "size=2m", "tmpfs", self.small], capture_output=True, check=False)
         self.addCleanup(os.rmdir, self.small)
         if done.returncode != 0:
             self.skipTest("a small file system cannot be mounted here (needs root)")
         self.addCleanup(subprocess.run, ["umount", self.small], check=False)
 
     def test_too_little_space_is_noticed_and_nothing_is_left(self):
-        self.run_farsum("generate", "cube", "in.h5", "--count", 20000)
+        self.run_farsum("generate", "cube", "in.h5", "--count", 200000)
         target = os.path.join(self.small, "out.h5")
         done = self.solve("in.h5", target, expect=1)
         self.assertRegex(done.err, "space|full")
-        self.run_farsum("generate", "cube", target, "--count", 20000, expect=1)
+        self.run_farsum("generate", "cube", target, "--count", 200000, expect=1)
         self.assertEqual(os.listdir(self.small), [])
 
     def test_old_output_survives(self):
         target = os.path.join(self.small, "out.h5")
         self.run_farsum("generate", "cube", target, "--count", 10)
         before = data_sets(target)
-        self.run_farsum("generate", "cube", target, "--count", 20000, "--overwrite", expect=1)
+        self.run_farsum("generate", "cube", target, "--count", 200000, "--overwrite", expect=1)
         self.assertEqual(data_sets(target), before)
         self.assertEqual(os.listdir(self.small), ["out.h5"])
 

@@ -11,7 +11,19 @@ from command_case import E_CHARGE, CommandCase, component, vector
 COUNT, SEED = 3000, 7
 # SHA-256 of places and momenta of all species (little-endian doubles, x y z interleaved) at COUNT and SEED, first 16 digits. Made by
 # this test; equal for GCC 12 -O0, -O2, -O3 -march=native and Clang 14 -O3 -march=native.
-CHECKSUMS = {}
+CHECKSUMS = {
+    "electron_bunch": "dcdbacb6eb5344ea",
+    "proton_bunch": "72690d4e6263a6a0",
+    "ion_cloud": "6179fe3c4aa92a89",
+    "crystallite": "2b9db78cc5a3fd26",
+    "droplets": "079f8e6703e05315",
+    "cube": "c21d011c89782281",
+    "shell": "f5b442da3bd78b83",
+    "line": "ffbb6c357ef3e1c8",
+    "plane": "1e7a05557c5ae182",
+    "droplets+signs": "e8fa9d089d50119b",
+    "cube+signs": "a6486a8ceb7e4a4b",
+}
 
 
 def species_of(path):

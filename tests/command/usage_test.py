@@ -43,10 +43,10 @@ class WrongUsage(CommandCase):
         self.assertIn(says, done.err)
 
     def test_no_subcommand(self):
-        self.refused(says="subcommand")
+        self.refused(says="choose one of generate, info, solve, verify")
 
     def test_unknown_subcommand(self):
-        self.refused("solv", says="solv")
+        self.refused("solv", "x.h5", says="there is no subcommand 'solv'")
 
     def test_unknown_option(self):
         self.refused("info", "x.h5", "--frobnicate", says="--frobnicate")
