@@ -23,16 +23,18 @@ class Builder {
  public:
   Builder(const PointsView& points, const PowerOfTwo& scale, const Frame& frame, OctreeLimits limits, Executor& executor,
           MemoryLedger& ledger)
-      : points_(points), scale_(scale), frame_(frame), limits_(limits), executor_(executor), ledger_(ledger),
-        key_(ledger, points.count), key_other_(ledger, points.count), index_(ledger, points.count),
-        index_other_(ledger, points.count) {}
+      : count_(points.count), frame_(frame), limits_(limits), executor_(executor), ledger_(ledger),
+        scaled_(ledger, 3 * points.count), key_(ledger, points.count), key_other_(ledger, points.count), index_(ledger, points.count),
+        index_other_(ledger, points.count) {
+    copy_scaled(points, scale);
+  }
 
   Octree build() {
     make_first_keys();
-    if (points_.count >= kPresortFrom) presort();
+    if (count_ >= kPresortFrom) presort();
     grow_boxes();
     tree_.frame = frame_;
-    tree_.count = points_.count;
+    tree_.count = count_;
     key_ = {};
     key_other_ = {};
     index_other_ = {};
@@ -43,10 +45,19 @@ class Builder {
   }
 
  private:
-  double coordinate(int axis, std::uint32_t i) const noexcept {
-    const double* const bases[3] = {points_.x, points_.y, points_.z};
-    return scale_(bases[axis][std::ptrdiff_t(i) * points_.stride]);
+  /// Scaled coordinates of a point side by side: later look-ups in random order touch one cache line a point.
+  void copy_scaled(const PointsView& points, const PowerOfTwo& scale) {
+    executor_.for_each(count_, kGrain, [&](std::size_t begin, std::size_t end, int) {
+      for (std::size_t i = begin; i < end; ++i) {
+        const std::ptrdiff_t at = std::ptrdiff_t(i) * points.stride;
+        scaled_[3 * i] = scale(points.x[at]);
+        scaled_[3 * i + 1] = scale(points.y[at]);
+        scaled_[3 * i + 2] = scale(points.z[at]);
+      }
+    });
   }
+
+  double coordinate(int axis, std::uint32_t i) const noexcept { return scaled_[3 * std::size_t(i) + std::size_t(axis)]; }
 
   /// Key of the kKeyLevels levels below `level` for point i, which lies in the box `place` of that level.
   std::uint64_t key_below(std::uint32_t i, int level, const BoxCoordinates& place) const noexcept {
@@ -66,7 +77,7 @@ class Builder {
   }
 
   void make_first_keys() {
-    executor_.for_each(points_.count, kGrain, [&](std::size_t begin, std::size_t end, int) {
+    executor_.for_each(count_, kGrain, [&](std::size_t begin, std::size_t end, int) {
       for (std::size_t i = begin; i < end; ++i) {
         key_[i] = first_key(std::uint32_t(i));
         index_[i] = std::uint32_t(i);
@@ -78,7 +89,7 @@ class Builder {
   void presort() {
     constexpr int kShift = 3 * (kKeyLevels - kPresortLevels);
     constexpr std::size_t kPieceSize = 1 << 16;
-    const std::size_t n = points_.count, pieces = (n + kPieceSize - 1) / kPieceSize;
+    const std::size_t n = count_, pieces = (n + kPieceSize - 1) / kPieceSize;
     std::vector<std::uint32_t> counts(pieces * kBuckets, 0);
     executor_.for_each(n, kPieceSize, [&](std::size_t begin, std::size_t end, int) {
       std::uint32_t* count = &counts[begin / kPieceSize * kBuckets];
@@ -149,12 +160,12 @@ class Builder {
   }
 
   void grow_boxes() {
-    if (points_.count == 0) {
+    if (count_ == 0) {
       tree_.level_begin = {0, 0};
       return;
     }
     Box root;
-    root.end = std::uint32_t(points_.count);
+    root.end = std::uint32_t(count_);
     tree_.boxes.push_back(root);
     tree_.level_begin = {0, 1};
     while (grow_level()) {
@@ -196,7 +207,7 @@ class Builder {
   }
 
   void gather_points() {
-    const std::size_t n = points_.count, padded = round_up(n, kSourcePad);
+    const std::size_t n = count_, padded = round_up(n, kSourcePad);
     const std::array<double, 3> pad = frame_.padding_place();
     AlignedArray<double>* const arrays[3] = {&tree_.x, &tree_.y, &tree_.z};
     for (int axis = 0; axis < 3; ++axis) {
@@ -209,12 +220,12 @@ class Builder {
     });
   }
 
-  const PointsView points_;
-  const PowerOfTwo scale_;
+  const std::size_t count_;
   const Frame frame_;
   const OctreeLimits limits_;
   Executor& executor_;
   MemoryLedger& ledger_;
+  AlignedArray<double> scaled_;
   AlignedArray<std::uint64_t> key_, key_other_;
   AlignedArray<std::uint32_t> index_, index_other_;
   std::vector<std::uint32_t> bucket_begin_;

@@ -31,7 +31,7 @@ void sum_block(const EvaluationJob& job, std::size_t begin, std::size_t end) {
                           job.root_accuracy, job.mask_zero, job.with_field);
   }
   for (std::size_t i = 0; i < end - begin; ++i) {
-    job.writer.store(begin + i, sums.potential[i], sums.x[i], sums.y[i], sums.z[i]);
+    job.results.store(begin + i, sums.potential[i], sums.x[i], sums.y[i], sums.z[i]);
     job.nearest_squared[begin + i] = sums.nearest[i];
   }
 }

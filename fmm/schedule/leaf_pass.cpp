@@ -49,7 +49,7 @@ class LeafTask {
         [&](std::uint32_t s, std::uint32_t) { add_multipole(leaf, s); });
     sum_pairs(leaf);
     for (std::uint32_t i = 0; i < leaf.count(); ++i)
-      job_.writer.store(leaf.begin + i, sums_.potential[i], sums_.x[i], sums_.y[i], sums_.z[i]);
+      job_.results.store(leaf.begin + i, sums_.potential[i], sums_.x[i], sums_.y[i], sums_.z[i]);
   }
 
  private:

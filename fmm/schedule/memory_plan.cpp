@@ -11,9 +11,9 @@
 namespace farsum {
 namespace {
 
-constexpr double kSortBytes = 2 * (sizeof(std::uint64_t) + sizeof(std::uint32_t));    // keys and indices, twice
+constexpr double kSortBytes = 3 * sizeof(double) + 2 * (sizeof(std::uint64_t) + sizeof(std::uint32_t));   // keys and indices twice
 constexpr double kPointBytes = 3 * sizeof(double) + sizeof(std::uint32_t);            // ordered coordinates and index
-constexpr double kSourceBytes = sizeof(double), kTargetBytes = sizeof(double);        // ordered charge; nearest distance
+constexpr double kSourceBytes = sizeof(double), kTargetBytes = 5 * sizeof(double);   // ordered charge; nearest distance, results
 constexpr double kNearEntries = 25;                                                   // of a box, on average
 constexpr double kBoxBytes = 2 * sizeof(Box) + kNearEntries * sizeof(ListEntry) + 80;  // vectors grow by doubling; accuracy tables
 

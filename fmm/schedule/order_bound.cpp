@@ -12,6 +12,9 @@ constexpr double kGrowth = 1.8, kCappedPart = 0.05;
 /// Expansions of unequal boxes are judged as the nearest far pair of boxes of one level.
 constexpr int kNearestSquared = 4;
 
+/// Of many boxes one in so many is asked; odd, so that no octant is preferred.
+constexpr std::size_t kAllBoxes = 10000, kSampleStride = 5;
+
 /// By wanted order: targets concerned, and the same weighted with the square of what they bear.
 struct Demand {
   std::array<double, kMaxOrder + 1> targets{}, squares{}, pairs{};
@@ -90,16 +93,17 @@ OrderSurvey order_bound(const EvaluationJob& job, const NearLists& near, const D
                         const OrderChoice& orders) {
   constexpr std::size_t kGrain = 512;
   const std::size_t boxes = job.targets.boxes.size();
+  const std::size_t stride = boxes > kAllBoxes ? kSampleStride : 1;
   std::vector<Demand> parts((boxes + kGrain - 1) / kGrain);
   const Collector collector(job, near, rule, accuracy, orders);
   job.executor.for_each(boxes, kGrain, [&](std::size_t begin, std::size_t end, int) {
-    for (std::size_t b = std::max<std::size_t>(begin, 1); b < end; ++b) collector.add_box(parts[begin / kGrain], b);
+    for (std::size_t b = std::max<std::size_t>(begin, 1); b < end; b += stride) collector.add_box(parts[begin / kGrain], b);
   });
   Demand demand;
   for (const Demand& part : parts) demand.join(part);
   OrderSurvey survey;
   survey.order = kMaxOrder;
-  while (survey.order > kMinOrder && demand.capped(survey.order - 1, double(job.targets.count)) <= kCappedPart) --survey.order;
+  while (survey.order > kMinOrder && demand.capped(survey.order - 1, double(job.targets.count) / double(stride)) <= kCappedPart) --survey.order;
   for (int p = 0; p <= kMaxOrder; ++p) {
     survey.pairs += demand.pairs[std::size_t(p)];
     survey.mean_order += demand.pairs[std::size_t(p)] * std::min(p, survey.order);

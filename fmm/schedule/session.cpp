@@ -270,14 +270,16 @@ double Session::charge_rms(const Units& units) const noexcept {
 
 void Session::run_passes(const Prepared& prepared, const EvaluationPlan& plan, const ResultView& result, Executor& executor) {
   if (nearest_squared_.size() != prepared.targets.count) nearest_squared_ = {ledger_, prepared.targets.count};
+  ResultBuffer results(prepared.targets.count, ledger_);
   const EvaluationJob job{prepared.sources, prepared.charges.data(), prepared.targets, result.field_x != nullptr,
                           options_.coincident == Coincident::skip, plan.root_accuracy, kernels_, executor, ledger_,
-                          ResultWriter(result, prepared.targets.index.data(), prepared.units.potential(), prepared.units.field()),
+                          results,
                           nearest_squared_.data(), options_};
   report_.plan.leaf_capacity = int(leaf_capacity());
-  if (plan.method == Method::tree) return tree_evaluator_.evaluate(job, charge_rms(prepared.units), plan.tolerance, report_);
+  if (plan.method == Method::tree) tree_evaluator_.evaluate(job, charge_rms(prepared.units), plan.tolerance, report_);
   const Stopwatch watch(report_.seconds.near);
-  evaluate_direct(job);
+  if (plan.method == Method::direct) evaluate_direct(job);
+  results.deliver(result, prepared.targets.index.data(), prepared.units.potential(), prepared.units.field(), executor);
 }
 
 void Session::refuse_close_pairs(const Prepared& prepared, const ResultView&) {
