@@ -48,8 +48,8 @@ def grouped(count):
 
 
 def scaled(values, unit):
-    """Values and unit with the prefix that brings the largest size to between 1 and 1000."""
-    size = np.max(np.abs(values), initial=0.0)
+    """Values and unit with the prefix that brings nine of ten sizes below 1000, the largest of those above 1."""
+    size = np.percentile(np.abs(values), 90) if values.size else 0.0
     factor, prefix = PREFIXES[4]
     for candidate, name in PREFIXES:
         if size >= candidate:
