@@ -38,7 +38,7 @@ double solve_seconds(const Charges& charges, const char* name) {
     best = std::min(best, outcome.report.seconds.solve);
   }
   std::printf("%-16s %8.3f s\n", name, best);
-  testing::Test::RecordProperty(name, std::to_string(best));
+  testing::Test::RecordProperty("seconds_" + std::string(name), std::to_string(best));
   return best;
 }
 
