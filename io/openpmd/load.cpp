@@ -1,6 +1,7 @@
 #include "io/openpmd/load.hpp"
 
 #include <fmt/format.h>
+#include <unistd.h>
 
 #include <algorithm>
 #include <cmath>
@@ -47,6 +48,12 @@ void check_memory(const OpenedFile& opened, std::uint64_t live, const ReadOption
                 fmt::format("its {} particles need {:.0f} MiB, the limit is {:.0f} MiB", live, bytes / 1048576.0,
                             static_cast<double>(options.memory_limit) / 1048576.0),
                 opened.file().path(), {}, "raise --memory-limit or choose fewer species");
+  }
+  // An allocation beyond all memory may seem to succeed and end in a kill later, so the size is compared first.
+  if (bytes > static_cast<double>(sysconf(_SC_PHYS_PAGES)) * static_cast<double>(sysconf(_SC_PAGESIZE))) {
+    throw Error(ErrorCode::out_of_memory,
+                fmt::format("declares {} particles, more than the memory of this machine holds", live), opened.file().path(),
+                {}, "choose fewer species");
   }
 }
 
