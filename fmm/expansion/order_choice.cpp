@@ -35,11 +35,14 @@ std::uint8_t smallest_order(double octaves, double spread, const float (&row)[kM
 OrderChoice::OrderChoice() {
   for (int squared = 4; squared < int(rows_.size()); ++squared) {
     const coulomb::TruncationRow* measured = coulomb::truncation_row(squared);
-    if (!measured) continue;
     for (std::size_t spread = 0; spread < kSpreads; ++spread)
       for (std::size_t s = 0; s < kSlots; ++s) {
         Row& row = rows_[std::size_t(squared)][spread];
         const double octaves = double(s) / kStepsPerOctave - allowance(squared), per_degree = double(spread) * kSpreadStep;
+        if (s + 1 == kSlots) {   // stands for everything beyond
+          row.potential[s] = row.field[s] = std::uint8_t(kMaxOrder);
+          continue;
+        }
         row.potential[s] = smallest_order(octaves, per_degree, measured->potential);
         row.field[s] = smallest_order(octaves, per_degree, measured->field);
       }

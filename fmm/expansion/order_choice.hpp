@@ -5,6 +5,7 @@
 #include <cstdint>
 #include <vector>
 
+#include "fmm/domain/box_offset.hpp"
 #include "fmm/expansion/indexing.hpp"
 
 namespace farsum {
@@ -20,7 +21,7 @@ class OrderChoice {
  public:
   OrderChoice();
 
-  /// Order for boxes of side 2^log_side at squared centre distance 4..27 (in sides); kMaxOrder if even that is not enough.
+  /// Order for boxes of side 2^log_side at a squared centre distance of 4 or more (in sides); kMaxOrder if even that is not enough.
   int order(int squared_distance, double log_side, const TranslationDemand& d) const noexcept {
     const Row& row = rows_[std::size_t(squared_distance)][spread_slot(d.spread)];
     const int a = row.potential[slot(d.strength_potential - log_side - d.bearable_potential)];
@@ -29,7 +30,7 @@ class OrderChoice {
   }
 
  private:
-  static constexpr int kStepsPerOctave = 2, kOctaves = 64;
+  static constexpr int kStepsPerOctave = 2, kOctaves = 80;
   static constexpr std::size_t kSlots = std::size_t(kStepsPerOctave * kOctaves);
   struct Row {
     std::array<std::uint8_t, kSlots> potential, field;
@@ -45,7 +46,7 @@ class OrderChoice {
     const double at = spread / kSpreadStep + 0.5;
     return at <= 0 ? 0 : at >= double(kSpreads - 1) ? kSpreads - 1 : std::size_t(at);
   }
-  std::array<std::array<Row, kSpreads>, 28> rows_{};
+  std::array<std::array<Row, kSpreads>, 3 * kOffsetReach * kOffsetReach + 1> rows_{};
 };
 
 /// Smallest order used; below it a translation costs hardly less.

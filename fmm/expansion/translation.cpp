@@ -20,23 +20,25 @@ void append_blocks(std::vector<Real>& to, int rows, int columns, const Entry& en
   }
 }
 
-bool used(const BoxOffset& o) {
-  const bool corner = o.x * o.x == 1 && o.y * o.y == 1 && o.z * o.z == 1;
-  return corner || !o.near();
-}
-
 BoxOffset corner_of(int octant) { return {octant & 1 ? 1 : -1, octant & 2 ? 1 : -1, octant & 4 ? 1 : -1}; }
 
 }  // namespace
 
 template <class Real>
-TranslationTables<Real>::TranslationTables(int order, Executor& executor) : order_(order) {
+TranslationTables<Real>::TranslationTables(int order, Executor& executor, Separation separation)
+    : order_(order), separation_(separation), directions_(kOffsets) {
   make_turns(executor);
   for (int index = 0; index < kOffsets; ++index)
     if (used(offset_of(index))) add_direction(directions_[std::size_t(index)], offset_of(index));
   make_scales();
   make_shifts();
   make_recurrence();
+}
+
+template <class Real>
+bool TranslationTables<Real>::used(const BoxOffset& o) const {
+  const bool corner = o.x * o.x == 1 && o.y * o.y == 1 && o.z * o.z == 1;
+  return corner || separation_.occurs(o);
 }
 
 template <class Real>
@@ -95,7 +97,7 @@ void TranslationTables<Real>::make_scales() {
   const auto powers = [&](std::vector<Real>& to, long double first, long double factor) {
     for (int n = 0; n <= order_; ++n, first *= factor) to.push_back(Real(first));
   };
-  for (int squared = 4; squared <= 27; ++squared) {
+  for (int squared = 4; squared <= 3 * kOffsetReach * kOffsetReach; ++squared) {
     const long double inverse = 1 / std::sqrt((long double)(squared));
     powers(far_scales_[squared].in, 1, inverse);
     powers(far_scales_[squared].out, inverse, inverse);

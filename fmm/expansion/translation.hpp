@@ -5,31 +5,21 @@
 #include <map>
 #include <vector>
 
+#include "fmm/domain/box_offset.hpp"
 #include "fmm/expansion/indexing.hpp"
 #include "fmm/kernels/kernel_table.hpp"
 #include "fmm/parallel/executor.hpp"
 
 namespace farsum {
 
-/// Offset between boxes of one level, source minus target, in box sides; far offsets have a largest component of 2 or 3.
-struct BoxOffset {
-  int x, y, z;
-  int squared() const noexcept { return x * x + y * y + z * z; }
-  bool near() const noexcept { return x * x <= 1 && y * y <= 1 && z * z <= 1; }
-};
-
-inline constexpr int kOffsetReach = 3;
-inline constexpr int kOffsets = 7 * 7 * 7;
-constexpr int offset_index(const BoxOffset& o) noexcept { return ((o.x + 3) * 7 + (o.y + 3)) * 7 + (o.z + 3); }
-constexpr BoxOffset offset_of(int index) noexcept { return {index / 49 - 3, index / 7 % 7 - 3, index % 7 - 3}; }
-
 /// All translations up to one order. Immutable after construction.
 template <class Real>
 class TranslationTables {
  public:
-  TranslationTables(int order, Executor& executor);
+  TranslationTables(int order, Executor& executor, Separation separation = {});
 
   int order() const noexcept { return order_; }
+  Separation separation() const noexcept { return separation_; }
   /// Multipole of a same-level source to local of the target, both in box units, with degrees up to `order` (<= order()).
   kernels::Translation<Real> far(int offset, int order) const;
   /// Multipole of the child `octant` to its parent; local of the parent to that child.
@@ -58,9 +48,12 @@ class TranslationTables {
   void make_shifts();
   void make_recurrence();
 
+  bool used(const BoxOffset& o) const;
+
   int order_;
+  Separation separation_;
   std::map<std::pair<int, int>, Turn> turns_;        ///< by (z, x^2 + y^2)
-  std::array<Direction, kOffsets> directions_;       ///< far offsets; the children use the corners (+-1, +-1, +-1)
+  std::vector<Direction> directions_;      ///< far offsets; the children use the corners (+-1, +-1, +-1)
   std::map<int, Scales> far_scales_;                 ///< by squared distance
   std::vector<std::vector<Real>> far_shifts_;        ///< by order
   std::vector<Real> up_shift_, down_shift_;

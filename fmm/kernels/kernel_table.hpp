@@ -21,7 +21,7 @@ struct PairSums {
   double* nearest_squared;  ///< min(old value, smallest r_ij^2), the self pair left out
 };
 
-/// Reciprocal roots: `fast` is good to 2e-13, `full` to rounding.
+/// Reciprocal roots: `fast` is good to 6e-13, `full` to rounding.
 enum class RootAccuracy { fast, full };
 
 /// Sums for error measurement: terms rounded once or twice each, added with compensation. Per target i:

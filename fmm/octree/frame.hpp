@@ -42,7 +42,7 @@ class Frame {
  private:
   std::array<double, 3> corner_{};
   double side_ = 1;
-  DoubleDouble units_per_length_{1, 0};   ///< 2^kMaxLevel / side
+  DoubleDouble units_per_length_{0x1p60, 0};   ///< 2^kMaxLevel / side
 };
 
 /// Interleaves the low 21 bits of three coordinates: bits ... z1 y1 x1 z0 y0 x0.

@@ -69,8 +69,7 @@ class LevelTask {
         [](const ListEntry&) {},
         [&](std::uint32_t s, std::uint32_t) {
           const Box& source = sources[s];
-          const BoxOffset offset{int(source.place[0] - target.place[0]), int(source.place[1] - target.place[1]),
-                                 int(source.place[2] - target.place[2])};
+          const BoxOffset offset = DirectRule::offset(target, source);
           const int order = work_.orders.order(offset.squared(), log_side, work_.accuracy.demand(b, s));
           bins_.add(offset_index(offset), std::min(order, work_.plan.order), s, std::uint32_t(b));
           work_.has_local[b] = 1;

@@ -10,7 +10,7 @@ namespace {
 /// Growth of the truncation error for each degree that is left out, and the part of the squared tolerance that may be lost to capping.
 constexpr double kGrowth = 1.8, kCappedPart = 0.05;
 /// Expansions of unequal boxes are judged as the nearest far pair of boxes of one level.
-constexpr int kNearestSquared = 4;
+constexpr int kNearestSquared = 5;
 
 /// Of many boxes one in so many is asked; odd, so that no octant is preferred.
 constexpr std::size_t kAllBoxes = 10000, kSampleStride = 5;
@@ -63,12 +63,7 @@ class Collector {
     for_child_relations(
         job_.sources, near_.begin(target.parent), near_.end(target.parent), target, rule_, [](const ListEntry&) {},
         [&](std::uint32_t s, std::uint32_t) {
-          int squared = 0;
-          for (std::size_t axis = 0; axis < 3; ++axis) {
-            const int d = int(sources[s].place[axis] - target.place[axis]);
-            squared += d * d;
-          }
-          demand.pairs[consider(s, squared, log_side)] += 1;
+          demand.pairs[consider(s, DirectRule::offset(target, sources[s]).squared(), log_side)] += 1;
         },
         [&](std::uint32_t s, std::uint32_t) { consider(s, kNearestSquared, log_side); });
     if (!target.leaf()) return;

@@ -259,7 +259,7 @@ double Session::leaf_fill() const noexcept { return double(leaf_capacity()) / kC
 EvaluationPlan Session::choose_plan(const Prepared& prepared, double tolerance) const noexcept {
   EvaluationPlan plan;
   plan.tolerance = tolerance;
-  plan.root_accuracy = tolerance >= 1e-11 ? kernels::RootAccuracy::fast : kernels::RootAccuracy::full;
+  plan.root_accuracy = tolerance >= 1e-10 ? kernels::RootAccuracy::fast : kernels::RootAccuracy::full;
   plan.method = chosen_method(prepared.sources.count, prepared.targets.count);
   return plan;
 }

@@ -13,6 +13,8 @@ namespace {
 
 /// Pairs that projecting or evaluating one charge costs, per coefficient.
 constexpr double kPairsPerTerm = 0.4;
+/// Tolerances below this count the six offsets (2, 0, 0) as near (domain/box_offset.hpp).
+constexpr double kWideBelow = 1e-7;
 
 }  // namespace
 
@@ -29,7 +31,7 @@ double direct_break_even(double tolerance) noexcept { return 2000 + 600 * std::m
 
 template <class Real>
 struct TreeEvaluator::Tables {
-  Tables(int order, Executor& executor) : translations(order, executor), gradients(order) {}
+  Tables(int order, Separation separation, Executor& executor) : translations(order, executor, separation), gradients(order) {}
   TranslationTables<Real> translations;
   GradientRows<Real> gradients;
 };
@@ -38,14 +40,15 @@ TreeEvaluator::TreeEvaluator() = default;
 TreeEvaluator::~TreeEvaluator() = default;
 
 template <class Real>
-TreeEvaluator::Tables<Real>& TreeEvaluator::tables(int order, Executor& executor) {
+TreeEvaluator::Tables<Real>& TreeEvaluator::tables(int order, Separation separation, Executor& executor) {
   auto& kept = [this]() -> auto& {
     if constexpr (sizeof(Real) == sizeof(float))
       return single_;
     else
       return double_;
   }();
-  if (!kept || kept->translations.order() != order) kept = std::make_unique<Tables<Real>>(order, executor);
+  if (!kept || kept->translations.order() != order || kept->translations.separation().near_squared != separation.near_squared)
+    kept = std::make_unique<Tables<Real>>(order, separation, executor);
   return *kept;
 }
 
@@ -53,6 +56,7 @@ void TreeEvaluator::evaluate(const EvaluationJob& job, double charge_rms, double
   TreePlan plan;
   plan.single_precision = single_precision_suffices(tolerance);
   plan.rule.terms = kPairsPerTerm * double(term_count(typical_order(tolerance)));
+  plan.rule.separation.near_squared = tolerance < kWideBelow ? 4 : 3;
   BoxAccuracy accuracy;
   std::unique_ptr<NearLists> near;
   {
@@ -71,7 +75,7 @@ void TreeEvaluator::evaluate(const EvaluationJob& job, double charge_rms, double
     std::unique_ptr<TreeWork<Real>> work;
     {
       const Stopwatch watch(report.seconds.far);
-      const Tables<Real>& kept = tables<Real>(plan.order, job.executor);
+      const Tables<Real>& kept = tables<Real>(plan.order, plan.rule.separation, job.executor);
       work = std::make_unique<TreeWork<Real>>(job, plan, *near, accuracy, orders_, kept.translations, kept.gradients);
       upward_pass(*work);
       far_pass(*work);

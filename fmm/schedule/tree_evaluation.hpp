@@ -31,7 +31,7 @@ class TreeEvaluator {
   template <class Real>
   struct Tables;
   template <class Real>
-  Tables<Real>& tables(int order, Executor& executor);
+  Tables<Real>& tables(int order, Separation separation, Executor& executor);
 
   OrderChoice orders_;
   std::unique_ptr<Tables<float>> single_;

@@ -1,15 +1,17 @@
 #pragma once
 // Who is near, who is far. Source boxes and target boxes lie on one lattice (octree/frame.hpp), in one tree or in two.
 // For a target box the source tree is covered without gap or overlap by
-//   near entries:  boxes of the same level that touch it, and leaves of lower level that touch it (or are summed directly anyway);
-//   far boxes:     boxes of the same level that do not touch it but whose parents touch its parent (multipole to local);
+//   near entries:  boxes of the same level that are near it, and leaves of lower level that touch it (or are summed directly anyway);
+//   far boxes:     boxes of the same level that are not near it but whose parents are near its parent (multipole to local);
 //   coarse boxes:  leaves of lower level that do not touch it, but touch its parent (charges to local);
 //   and what its ancestors have as far or coarse boxes.
 // A target leaf with a divided near box goes down into that: leaves that touch it are near, the first box below that does not touch it
 // is fine (multipole to targets).
+#include <algorithm>
 #include <cstdint>
 #include <vector>
 
+#include "fmm/domain/box_offset.hpp"
 #include "fmm/octree/octree.hpp"
 #include "fmm/parallel/executor.hpp"
 
@@ -25,9 +27,23 @@ struct ListEntry {
 /// True if the boxes touch or overlap.
 bool touching(const Box& a, const Box& b) noexcept;
 
-/// Up to which product of counts or count a far-away leaf is summed directly (see direct_is_cheaper).
+/// How relations are decided: which boxes of one level are near, and when charges of a leaf are summed pair by pair although
+/// expansions would do.
 struct DirectRule {
   double terms = 0;   ///< pairs that one charge's projection or evaluation costs
+  Separation separation;
+
+  /// Boxes of one level by the separation, of different levels if they touch.
+  bool near(const Box& a, const Box& b) const noexcept {
+    return touching(a, b) || (a.level == b.level && separation.near_squared > 3 && separation.near(offset(a, b)));
+  }
+  /// Offset of boxes of one level, cut at a distance that is far in any case.
+  static BoxOffset offset(const Box& target, const Box& source) noexcept {
+    const auto component = [&](std::size_t axis) {
+      return int(std::clamp<std::int64_t>(source.place[axis] - target.place[axis], -100, 100));
+    };
+    return {component(0), component(1), component(2)};
+  }
 
   bool coarse_direct(const Box& target, const Box& /*source*/) const noexcept { return target.count() <= terms; }
   bool fine_direct(const Box& /*target*/, const Box& source) const noexcept { return source.count() <= terms; }
@@ -60,7 +76,7 @@ void for_child_relations(const Octree& sources, const ListEntry* begin, const Li
       near(*entry);
     } else if (!box.leaf()) {
       for (std::uint32_t b = box.first_child; b < box.first_child + box.children; ++b) {
-        if (touching(child, sources.boxes[b]))
+        if (rule.near(child, sources.boxes[b]))
           near(ListEntry{b, entry->shift, 0});
         else
           far(b, entry->shift);
@@ -82,7 +98,7 @@ void for_leaf_relations(const Octree& sources, const ListEntry* begin, const Lis
                         const Direct& direct, const Fine& fine) {
   const auto descend = [&](const auto& self, std::uint32_t b, std::uint32_t shift) -> void {
     const Box& box = sources.boxes[b];
-    if (touching(leaf, box)) {
+    if (rule.near(leaf, box)) {
       if (box.leaf()) return direct(b, shift);
       for (std::uint32_t c = box.first_child; c < box.first_child + box.children; ++c) self(self, c, shift);
     } else if (rule.fine_direct(leaf, box)) {
