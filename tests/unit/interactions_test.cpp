@@ -19,6 +19,12 @@ using unit::tree_of;
 
 constexpr std::size_t kNone = ~std::size_t{0};
 
+DirectRule rule_of(double terms) {
+  DirectRule rule;
+  rule.terms = terms;
+  return rule;
+}
+
 /// How often each (target, source) pair is covered, and how the pairs are shared out.
 struct Coverage {
   std::vector<int> marks;
@@ -37,7 +43,7 @@ class Walk {
   Walk(const Octree& sources, const Octree& targets, double terms, int threads, std::size_t dropped = kNone)
       : sources_(sources),
         targets_(targets),
-        rule_{terms},
+        rule_(rule_of(terms)),
         executor_(threads),
         near_(sources, targets, rule_, executor_),
         dropped_(dropped) {
@@ -153,7 +159,7 @@ TEST(Interactions, ARelationLeftOutIsNoticed) {
 TEST(Interactions, FarBoxesAreWithinTheReachOfTheTranslationTables) {
   const Octree tree = tree_of(make_scene(Shape::scales_1e9, Signs::one, 1000, 5), 5);
   Executor executor(1);
-  const DirectRule rule{0};
+  const DirectRule rule = rule_of(0);
   const NearLists near(tree, tree, rule, executor);
   for (std::uint32_t b = 1; b < tree.boxes.size(); ++b) {
     const Box& box = tree.boxes[b];
@@ -170,7 +176,7 @@ TEST(Interactions, FarBoxesAreWithinTheReachOfTheTranslationTables) {
 TEST(Interactions, ListsAreTheSameFromAnyNumberOfThreads) {
   const Octree tree = tree_of(make_scene(Shape::droplets, Signs::one, 20000, 5), 6);
   Executor one(1), many(3);
-  const NearLists a(tree, tree, {8}, one), b(tree, tree, {8}, many);
+  const NearLists a(tree, tree, rule_of(8), one), b(tree, tree, rule_of(8), many);
   const auto equal = [](const ListEntry& x, const ListEntry& y) {
     return x.box == y.box && x.shift == y.shift && x.direct == y.direct;
   };
@@ -181,7 +187,7 @@ TEST(Interactions, ListsAreTheSameFromAnyNumberOfThreads) {
 TEST(Interactions, WithoutSourcesAreEmpty) {
   const Octree nothing = tree_of(Charges{}, 4), tree = tree_of(make_scene(Shape::cube, Signs::one, 100, 5), 4);
   Executor executor(1);
-  const NearLists none(nothing, tree, {0}, executor);
+  const NearLists none(nothing, tree, rule_of(0), executor);
   for (std::size_t box = 0; box < tree.boxes.size(); ++box) EXPECT_EQ(none.begin(box), none.end(box));
 }
 
