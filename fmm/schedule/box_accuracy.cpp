@@ -15,6 +15,8 @@ constexpr double kPotentialCoherence = 1.0, kFieldCoherence = 0.25;
 constexpr double kLocalShare = 0.5;
 /// Fraction of the field of the far boxes that is counted on: near charges may cancel some of it.
 constexpr double kFarShare = 0.4;
+/// Power of the ratio of least to local field that allows for zeros of the field.
+constexpr double kFieldZeros = 0.1;
 
 /// Power of the squared radius whose mean stands for the far terms, and octaves per degree for each octave of the radius; a box whose
 /// points all sit in one corner gets 0.3 octaves per degree.
@@ -78,6 +80,16 @@ std::vector<float> spreads(const Octree& tree) {
     result[b] = float(kSpreadFactor * 0.5 * std::max(0.0, std::log2(radius2)));
   }
   return result;
+}
+
+bool has_both_signs(const std::vector<Moments>& moments) {
+  // A box of n charges of one sign has a sum of at least the root of its sum of squares; opposite boxes show in the signs of the sums.
+  bool positive = false, negative = false;
+  for (const Moments& m : moments) {
+    positive = positive || m.sum > 0;
+    negative = negative || m.sum < 0;
+  }
+  return positive && negative;
 }
 
 float logarithm(double value) { return value > 0 ? float(std::log2(value)) : -std::numeric_limits<float>::infinity(); }
@@ -147,17 +159,25 @@ BoxAccuracy box_accuracy(const EvaluationJob& job, const NearLists& near, const 
   const float unlimited = std::numeric_limits<float>::infinity();
   accuracy.bearable_potential.assign(boxes.size(), unlimited);
   accuracy.bearable_field.assign(boxes.size(), unlimited);
+  const bool both_signs = has_both_signs(moments);
   const auto leaf_limits = [&](std::size_t b) {
     const Box& box = boxes[b];
-    double potential = std::max(allowed.potential, kFarShare * std::abs(far[b].potential));
-    double field = std::max(allowed.field, kFarShare * far[b].strength());
+    double potential = kFarShare * std::abs(far[b].potential);
+    double field = kFarShare * far[b].strength();
     if (job.same_points() && box.count() > 1) {
       const double q = std::sqrt(moments[b].squares / box.count());
       const double spacing = job.targets.frame.box_side(box.level) / std::cbrt(double(box.count()));
       potential = std::max(potential, kLocalShare * q / spacing);
       field = std::max(field, kLocalShare * q / (spacing * spacing));
     }
+    // Where charges have both signs, potentials pass through zero: among values of size p spread evenly around it the mean of
+    // 1 / max(|phi|, m)^2 is about 1 / (p m), so the norm "typical" bears sqrt(p m) only.
+    if (both_signs) potential = std::sqrt(potential * allowed.least_potential);
+    potential = std::max(potential, allowed.potential);
     accuracy.bearable_potential[b] = logarithm(share * potential);
+    // A field in space seldom comes near zero, but charges that lie nearly in a plane or on a line bring it there more often.
+    if (field > allowed.least_field) field *= std::pow(allowed.least_field / field, kFieldZeros);
+    field = std::max(field, allowed.field);
     if (job.with_field) accuracy.bearable_field[b] = logarithm(share * field);
   };
   job.executor.for_each(boxes.size(), 256, [&](std::size_t begin, std::size_t end, int) {

@@ -80,7 +80,9 @@ AllowedError survey(const EvaluationJob& job, double charge_rms) {
     field_floors.push_back(charge_rms / v.nearest);
   }
   if (field_floors.empty()) potential_floors = field_floors = {0.0};
-  return {allowed(potentials, median(potential_floors)), allowed(fields, median(field_floors))};
+  const double potential_floor = median(potential_floors), field_floor = median(field_floors);
+  return {allowed(potentials, potential_floor), allowed(fields, field_floor), std::max(median(potentials), potential_floor),
+          std::max(median(fields), field_floor)};
 }
 
 }  // namespace farsum

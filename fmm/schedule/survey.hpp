@@ -8,6 +8,8 @@ namespace farsum {
 /// Absolute errors that keep both norms of the contract (rms <= t, typical <= 3 t) if every target has them, for t = 1; scaled units.
 struct AllowedError {
   double potential = 0, field = 0;
+  /// The smallest sizes that the norm "typical" divides an error by: max(median |f|, f0).
+  double least_potential = 0, least_field = 0;
 };
 
 /// Cost: kSurveyTargets x sources pairs.

@@ -17,14 +17,22 @@ std::uint64_t mix(std::uint64_t v) {
 /// Number in [0, 1) for a slice.
 double chance(std::uint64_t slice) { return double(mix(slice) >> 11) * 0x1p-53; }
 
-/// Draws one of the places [begin, end) with probability (1/n + importance / sum) / 2.
-Sample draw(const std::uint32_t* begin, const std::uint32_t* end, std::uint64_t slice,
-            const std::function<double(std::uint32_t)>& importance) {
-  const double n = double(end - begin);
-  std::vector<double> probability;
+/// Adds to the probabilities of places [begin, end) what a weight contributes: share * weight / sum.
+void add_share(const std::uint32_t* begin, const std::uint32_t* end, const std::vector<float>& weight, double share,
+               std::vector<double>& probability) {
   double sum = 0;
-  for (const std::uint32_t* place = begin; place != end; ++place) sum += probability.emplace_back(importance(*place));
-  for (double& p : probability) p = sum > 0 ? 0.5 / n + 0.5 * p / sum : 1 / n;
+  for (const std::uint32_t* place = begin; place != end; ++place) sum += double(weight[*place]);
+  for (std::size_t i = 0; i < probability.size(); ++i)
+    probability[i] += sum > 0 ? share * double(weight[begin[i]]) / sum : share / double(probability.size());
+}
+
+/// Draws one of the places [begin, end): one part by chance, one part by each weight.
+Sample draw(const std::uint32_t* begin, const std::uint32_t* end, std::uint64_t slice, const std::vector<float>& absolute,
+            const std::vector<float>& relative) {
+  const double parts = 1.0 + (absolute.empty() ? 0 : 1) + (relative.empty() ? 0 : 1), n = double(end - begin);
+  std::vector<double> probability(std::size_t(end - begin), 1 / (parts * n));
+  if (!absolute.empty()) add_share(begin, end, absolute, 1 / parts, probability);
+  if (!relative.empty()) add_share(begin, end, relative, 1 / parts, probability);
   double reached = 0;
   const double wanted = chance(slice);
   std::size_t i = 0;
@@ -42,7 +50,7 @@ void take_first(std::vector<std::uint32_t>::iterator begin, std::vector<std::uin
 }  // namespace
 
 std::vector<Sample> choose_samples(std::uint32_t n, std::size_t wanted, const std::function<double(std::uint32_t)>& strength,
-                                   const double* nearest_squared, const std::function<double(std::uint32_t)>& importance) {
+                                   const double* nearest_squared, const std::vector<float>& absolute, const std::vector<float>& relative) {
   std::vector<Sample> samples;
   if (n <= wanted) {
     for (std::uint32_t place = 0; place < n; ++place) samples.push_back({place, 1.0, true});
@@ -63,7 +71,7 @@ std::vector<Sample> choose_samples(std::uint32_t n, std::size_t wanted, const st
   const std::size_t rest = n - 2 * quarter;
   for (std::size_t s = 0; s < slices; ++s) {
     const std::size_t begin = rest * s / slices, end = rest * (s + 1) / slices;
-    if (begin != end) samples.push_back(draw(&places[2 * quarter] + begin, &places[2 * quarter] + end, s, importance));
+    if (begin != end) samples.push_back(draw(&places[2 * quarter] + begin, &places[2 * quarter] + end, s, absolute, relative));
   }
   return samples;
 }

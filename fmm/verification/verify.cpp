@@ -43,20 +43,38 @@ class Reader {
   PowerOfTwo potential_, field_;
 };
 
-/// By place: (r / r_corner)^order, r the distance from the centre of the target's leaf; what the error of a local expansion grows like.
-std::vector<float> corner_weights(const Octree& targets, int order, Executor& executor) {
-  std::vector<float> weights(targets.count, 0.0f);
+/// By place, the expected squared error of an expansion, absolute and relative: (r / r_corner)^order, r the distance from the centre
+/// of the target's leaf, and the mean squared potential of the leaf over the target's own. Empty without expansions.
+struct ErrorWeights {
+  std::vector<float> absolute, relative;
+};
+
+ErrorWeights error_weights(const Octree& targets, int order, const Reader& reader, bool with_potential, Executor& executor) {
+  constexpr double kLargestRatio = 1e12;
+  ErrorWeights weights;
   if (order == 0) return weights;
+  weights.absolute.resize(targets.count);
+  weights.relative.resize(targets.count);
+  const auto size2 = [&](std::uint32_t k) {
+    const Computed c = reader.at(k);
+    return with_potential ? c.potential * c.potential : c.field[0] * c.field[0] + c.field[1] * c.field[1] + c.field[2] * c.field[2];
+  };
   executor.for_each(targets.boxes.size(), 64, [&](std::size_t begin, std::size_t end, int) {
     for (std::size_t b = begin; b < end; ++b) {
       const Box& box = targets.boxes[b];
       if (!box.leaf()) continue;
       const std::array<DoubleDouble, 3> centre = targets.frame.centre(box.place, box.level);
       const double corner2 = 0.75 * std::pow(targets.frame.box_side(box.level), 2);
+      double mean2 = 0;
       for (std::uint32_t k = box.begin; k < box.end; ++k) {
         const double x = targets.x[k] - centre[0].high - centre[0].low, y = targets.y[k] - centre[1].high - centre[1].low,
                      z = targets.z[k] - centre[2].high - centre[2].low;
-        weights[k] = float(std::pow((x * x + y * y + z * z) / corner2, 0.5 * order));
+        weights.absolute[k] = float(std::pow((x * x + y * y + z * z) / corner2, 0.5 * order));
+        mean2 += size2(k) / box.count();
+      }
+      for (std::uint32_t k = box.begin; k < box.end; ++k) {
+        const double own = size2(k);
+        weights.relative[k] = float(own * kLargestRatio > mean2 ? mean2 / own : kLargestRatio);
       }
     }
   });
@@ -89,10 +107,10 @@ VerificationOutcome verify_result(const VerifiedResult& result, std::size_t want
                                   const kernels::KernelTable& kernels, Executor& executor) {
   const Octree &sources = result.sources, &targets = result.targets;
   const Reader reader(result);
-  const std::vector<float> corners = corner_weights(targets, result.order, executor);
+  const ErrorWeights weights = error_weights(targets, result.order, reader, result.values.potential != nullptr, executor);
   const std::vector<Sample> samples = choose_samples(
       std::uint32_t(targets.count), wanted, [&](std::uint32_t place) { return reader.strength(place); }, result.nearest_squared,
-      [&](std::uint32_t place) { return double(corners[place]); });
+      weights.absolute, weights.relative);
   std::vector<ExactTarget> places;
   for (const Sample& s : samples)
     places.push_back({targets.x[s.place], targets.y[s.place], targets.z[s.place], &sources == &targets ? std::int64_t(s.place) : -1});
