@@ -10,14 +10,21 @@ namespace farsum {
 ///   potential: phi_i = sum_{j != i} q_j / |x_i - x_j|                       in charge / length
 ///   field:     E_i = -grad phi_i = sum_{j != i} q_j (x_i - x_j)/|x_i - x_j|^3  in charge / length^2
 enum class Output : unsigned { none = 0, potential = 1, field = 2 };
-constexpr Output operator|(Output a, Output b) { return Output(unsigned(a) | unsigned(b)); }
-constexpr Output operator&(Output a, Output b) { return Output(unsigned(a) & unsigned(b)); }
-constexpr bool has(Output set, Output item) { return (unsigned(set) & unsigned(item)) != 0; }
+constexpr Output operator|(Output a, Output b) {
+  return Output(unsigned(a) | unsigned(b));
+}
+constexpr Output operator&(Output a, Output b) {
+  return Output(unsigned(a) & unsigned(b));
+}
+constexpr bool has(Output set, Output item) {
+  return (unsigned(set) & unsigned(item)) != 0;
+}
 
 /// Direct double sum, tree, or whichever is predicted to be faster.
 enum class Method { automatic, direct, tree };
 
-/// Pairs of charges at exactly the same place (or a target exactly on a charge): an error that names both, or left out of the sums.
+/// Pairs of charges at exactly the same place (or a target exactly on a charge): an error that names both, or left out of the
+/// sums.
 enum class Coincident { error, skip };
 
 /// When the error of an evaluation is measured against exact sums.

@@ -10,7 +10,8 @@
 
 namespace farsum {
 
-/// One set of charges and everything prepared for it. Not for use by two threads at a time; any number of solvers may work side by side.
+/// One set of charges and everything prepared for it. Not for use by two threads at a time; any number of solvers may work side
+/// by side.
 class Solver {
  public:
   /// Throws Error(invalid_argument) for an option out of range.
@@ -28,8 +29,9 @@ class Solver {
   void update_charges(ChargesView charges);
 
   /// Outputs at the charges themselves; a charge does not act on itself. Results are in the caller's order.
-  /// Error: Options::tolerance in the norms of fmm/report.hpp. Throws coincident_charges, range_exceeded, tolerance_unreachable,
-  /// accuracy_not_reached, memory_refused, cancelled; the result arrays then hold unspecified finite or partial values.
+  /// Error: Options::tolerance in the norms of fmm/report.hpp. Throws coincident_charges, range_exceeded,
+  /// tolerance_unreachable, accuracy_not_reached, memory_refused, cancelled; the result arrays then hold unspecified finite or
+  /// partial values.
   void evaluate(Output outputs, ResultView result);
 
   /// Outputs at other places; every charge acts. Throws also target_on_charge, unless Options::coincident is skip:
@@ -47,6 +49,7 @@ class Solver {
 /// Measures any result against exact sums, independently of how it was made: `result` holds outputs at the charges.
 /// Same choice of targets and same norms as the solver's own measurement; `met` compares with options.tolerance.
 /// Cost: samples x charges pairs. Throws like Solver::evaluate.
-ErrorMeasure measure_error(PointsView positions, ChargesView charges, Output outputs, ResultView result, const Options& options);
+ErrorMeasure measure_error(PointsView positions, ChargesView charges, Output outputs, ResultView result,
+                           const Options& options);
 
 }  // namespace farsum

@@ -1,7 +1,7 @@
 // Measures how large the error of a truncated multipole-to-local translation is, and prints the table of
 // fmm/medium/coulomb/truncation_table.hpp: for each squared centre distance 4..27 of far box pairs and each order 0..48 the RMS
-// potential and field error as -log2, for sources of sum q^2 = 1 at random places of a cube of side one and random targets in another.
-// Run: truncation_table > fmm/medium/coulomb/truncation_table.hpp   (about a minute; fixed seed)
+// potential and field error as -log2, for sources of sum q^2 = 1 at random places of a cube of side one and random targets in
+// another. Run: truncation_table > fmm/medium/coulomb/truncation_table.hpp   (about a minute; fixed seed)
 #include <cmath>
 #include <cstdint>
 #include <cstdio>
@@ -45,8 +45,8 @@ struct Exact {
 Exact exact_at(const Cloud& sources, const farsum::BoxOffset& o, double tx, double ty, double tz) {
   long double sum = 0, f[3] = {0, 0, 0};
   for (std::size_t j = 0; j < kPoints; ++j) {
-    const long double dx = (long double)(tx) - sources.x[j] - o.x, dy = (long double)(ty) - sources.y[j] - o.y,
-                      dz = (long double)(tz) - sources.z[j] - o.z;
+    const long double dx = (long double)(tx)-sources.x[j] - o.x, dy = (long double)(ty)-sources.y[j] - o.y,
+                      dz = (long double)(tz)-sources.z[j] - o.z;
     const long double w = 1 / std::sqrt(dx * dx + dy * dy + dz * dz), w3 = sources.q[j] * w * w * w;
     sum += sources.q[j] * w;
     f[0] += w3 * dx;
@@ -107,7 +107,8 @@ void print_row(const double* squares, double count) {
     octaves.push_back(value);
   }
   std::printf("     {");
-  for (int p = 0; p <= kMaxOrder; ++p) std::printf("%.1ff%s", octaves[std::size_t(p)], p == kMaxOrder ? "}" : p % 14 == 13 ? ",\n      " : ", ");
+  for (int p = 0; p <= kMaxOrder; ++p)
+    std::printf("%.1ff%s", octaves[std::size_t(p)], p == kMaxOrder ? "}" : p % 14 == 13 ? ",\n      " : ", ");
 }
 
 }  // namespace
@@ -121,10 +122,14 @@ int main() {
     for (int y = 0; y <= x; ++y)
       for (int z = 0; z <= y; ++z)
         if (const farsum::BoxOffset o{x, y, z}; !o.near()) classes[o.squared()].push_back(o);
-  std::printf("#pragma once\n// clang-format off\n// Made by bench/tools/truncation_table.cpp (%d trials of %zu charges and targets per offset); see truncation.hpp.\n\n", kTrials,
-              kPoints);
-  std::printf("namespace farsum::coulomb {\n\nstruct TruncationRow {\n  int squared_distance;\n  float potential[%d], field[%d];   ///< -log2 of the RMS error, by order\n};\n\n",
-              kMaxOrder + 1, kMaxOrder + 1);
+  std::printf(
+      "#pragma once\n// clang-format off\n// Made by bench/tools/truncation_table.cpp (%d trials of %zu charges and targets "
+      "per offset); see truncation.hpp.\n\n",
+      kTrials, kPoints);
+  std::printf(
+      "namespace farsum::coulomb {\n\nstruct TruncationRow {\n  int squared_distance;\n  float potential[%d], field[%d];   "
+      "///< -log2 of the RMS error, by order\n};\n\n",
+      kMaxOrder + 1, kMaxOrder + 1);
   std::printf("inline constexpr TruncationRow kTruncationRows[] = {\n");
   for (const auto& [squared, offsets] : classes) {
     Squares worst;

@@ -9,9 +9,11 @@ namespace {
 
 constexpr std::size_t kCacheLine = 64;
 constexpr std::size_t kHugePage = std::size_t{1} << 21;
-constexpr std::size_t kHugeFrom = 2 * kHugePage;   // smaller blocks stay with the ordinary allocator
+constexpr std::size_t kHugeFrom = 2 * kHugePage;  // smaller blocks stay with the ordinary allocator
 
-std::align_val_t alignment_of(std::size_t bytes) noexcept { return std::align_val_t{bytes >= kHugeFrom ? kHugePage : kCacheLine}; }
+std::align_val_t alignment_of(std::size_t bytes) noexcept {
+  return std::align_val_t{bytes >= kHugeFrom ? kHugePage : kCacheLine};
+}
 
 }  // namespace
 
@@ -22,6 +24,8 @@ void* allocate_pages(std::size_t bytes) {
   return block;
 }
 
-void release_pages(void* block, std::size_t bytes) noexcept { ::operator delete(block, alignment_of(bytes)); }
+void release_pages(void* block, std::size_t bytes) noexcept {
+  ::operator delete(block, alignment_of(bytes));
+}
 
 }  // namespace farsum

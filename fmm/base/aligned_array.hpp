@@ -47,8 +47,8 @@ class LedgerShare {
   std::uint64_t bytes_ = 0;
 };
 
-/// Memory aligned to a cache line; large blocks to huge pages, which the system is asked to use (page faults and address look-ups
-/// cost a third of a solve of 10^6 charges with small pages). Throws std::bad_alloc.
+/// Memory aligned to a cache line; large blocks to huge pages, which the system is asked to use (page faults and address
+/// look-ups cost a third of a solve of 10^6 charges with small pages). Throws std::bad_alloc.
 void* allocate_pages(std::size_t bytes);
 void release_pages(void* block, std::size_t bytes) noexcept;
 

@@ -26,10 +26,14 @@ bool cpu_supports(CpuTarget target) noexcept {
 
 const char* cpu_target_name(CpuTarget target) noexcept {
   switch (target) {
-    case CpuTarget::portable: return "portable";
-    case CpuTarget::avx2: return "avx2";
-    case CpuTarget::avx512: return "avx512";
-    case CpuTarget::automatic: break;
+    case CpuTarget::portable:
+      return "portable";
+    case CpuTarget::avx2:
+      return "avx2";
+    case CpuTarget::avx512:
+      return "avx512";
+    case CpuTarget::automatic:
+      break;
   }
   return "automatic";
 }
@@ -47,7 +51,8 @@ CpuTarget resolve_cpu_target(CpuTarget requested) {
                   "use portable, avx2 or avx512, or unset it");
   }
   if (!cpu_supports(requested))
-    throw Error(ErrorCode::invalid_argument, std::string("this processor has no ") + cpu_target_name(requested) + " instructions",
+    throw Error(ErrorCode::invalid_argument,
+                std::string("this processor has no ") + cpu_target_name(requested) + " instructions",
                 "choose another CPU target");
   return requested;
 }

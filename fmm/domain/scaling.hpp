@@ -1,6 +1,6 @@
 #pragma once
-// Power-of-two scaling: lengths and charges are brought to order one by factors 2^k, results scaled back, so that no intermediate
-// overflows and scaling an input by a power of two changes no mantissa bit of any result.
+// Power-of-two scaling: lengths and charges are brought to order one by factors 2^k, results scaled back, so that no
+// intermediate overflows and scaling an input by a power of two changes no mantissa bit of any result.
 #include <array>
 #include <cstddef>
 
@@ -9,7 +9,8 @@
 
 namespace farsum {
 
-/// Product with 2^exponent, exact unless the result is subnormal or overflows; works for exponents beyond the range of one double.
+/// Product with 2^exponent, exact unless the result is subnormal or overflows; works for exponents beyond the range of one
+/// double.
 class PowerOfTwo {
  public:
   explicit PowerOfTwo(int exponent = 0);

@@ -1,11 +1,12 @@
-// Derivatives of the harmonics H_nm of indexing.hpp (from E. W. Hobson, Spherical and Ellipsoidal Harmonics, 1931, in this normalisation),
-// with G_nm = H_nm / r^(2n+1):
+// Derivatives of the harmonics H_nm of indexing.hpp (from E. W. Hobson, Spherical and Ellipsoidal Harmonics, 1931, in this
+// normalisation), with G_nm = H_nm / r^(2n+1):
 //   d/dz H_nm = sqrt(n^2 - m^2) H_{n-1,m}                   d/dz G_nm = -sqrt((n+1)^2 - m^2) G_{n+1,m}
-//   (d/dx - i d/dy) H_nm = sqrt((n+m)(n+m-1)) H_{n-1,m-1}    (d/dx - i d/dy) G_nm = sqrt((n-m+1)(n-m+2)) G_{n+1,m-1}       m >= 1
-//   (d/dx + i d/dy) H_nm = -sqrt((n-m)(n-m-1)) H_{n-1,m+1}   (d/dx + i d/dy) G_nm = -sqrt((n+m+1)(n+m+2)) G_{n+1,m+1}
+//   (d/dx - i d/dy) H_nm = sqrt((n+m)(n+m-1)) H_{n-1,m-1}    (d/dx - i d/dy) G_nm = sqrt((n-m+1)(n-m+2)) G_{n+1,m-1}       m >=
+//   1 (d/dx + i d/dy) H_nm = -sqrt((n-m)(n-m-1)) H_{n-1,m+1}   (d/dx + i d/dy) G_nm = -sqrt((n+m+1)(n+m+2)) G_{n+1,m+1}
 // and for m = 0 (d/dx - i d/dy) is the conjugate of (d/dx + i d/dy).
-// With real coefficients A (cosine) and B (sine) of order m the derivative by x passes +f A, +f B to order m - 1 and -g A, -g B to
-// m + 1; by y it passes +f B, -f A to m - 1 and +g B, -g A to m + 1, with f = down / 2, g = up / 2. Orders 0 carry a factor sqrt(2).
+// With real coefficients A (cosine) and B (sine) of order m the derivative by x passes +f A, +f B to order m - 1 and -g A, -g B
+// to m + 1; by y it passes +f B, -f A to m - 1 and +g B, -g A to m + 1, with f = down / 2, g = up / 2. Orders 0 carry a factor
+// sqrt(2).
 #include "fmm/expansion/gradient.hpp"
 
 #include <algorithm>

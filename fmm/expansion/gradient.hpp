@@ -15,7 +15,8 @@ class GradientRows {
  public:
   explicit GradientRows(int order);
 
-  /// Coefficients of d/dx, d/dy, d/dz of the local potential sum L_nk R_nk, degrees n <= order - 1, padded rows of row_length(order).
+  /// Coefficients of d/dx, d/dy, d/dz of the local potential sum L_nk R_nk, degrees n <= order - 1, padded rows of
+  /// row_length(order).
   void of_local(const Real* local, int order, Real* const (&rows)[3]) const;
   /// The same for a multipole potential sum M_nk S_nk: degrees n <= order + 1, rows of row_length(order + 1).
   void of_multipole(const Real* multipole, int order, Real* const (&rows)[3]) const;

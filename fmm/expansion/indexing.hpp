@@ -9,8 +9,8 @@
 //
 // Multipole expansion of a box: M_nk = sum_j q_j R_nk(y_j), potential sum M_nk S_nk(x). Local: potential sum L_nk R_nk(x).
 // Positions are relative to the centre of the box in units of its side h; then potential = (1/h) sum, field = -(1/h^2) grad.
-// All degrees n <= order are kept. Coefficient (n, k), -n <= k <= n, stands at n^2 + n + k: an expansion of lower order is a prefix.
-// A row of coefficients is padded with zeros to whole 64-byte blocks.
+// All degrees n <= order are kept. Coefficient (n, k), -n <= k <= n, stands at n^2 + n + k: an expansion of lower order is a
+// prefix. A row of coefficients is padded with zeros to whole 64-byte blocks.
 #include <cstddef>
 
 #include "fmm/base/padding.hpp"
@@ -20,8 +20,12 @@ namespace farsum {
 /// Highest order of any expansion; enough for a tolerance of 1e-13 with box pairs one box apart.
 inline constexpr int kMaxOrder = 48;
 
-constexpr std::size_t term_count(int order) noexcept { return std::size_t(order + 1) * std::size_t(order + 1); }
-constexpr std::size_t term_index(int n, int k) noexcept { return std::size_t(n * n + n + k); }
+constexpr std::size_t term_count(int order) noexcept {
+  return std::size_t(order + 1) * std::size_t(order + 1);
+}
+constexpr std::size_t term_index(int n, int k) noexcept {
+  return std::size_t(n * n + n + k);
+}
 
 /// Length of a padded row of coefficients.
 template <class Real>

@@ -10,10 +10,12 @@ namespace {
 /// Orders above this are even numbers only, so that translations of one offset share their order more often.
 constexpr int kEvenAbove = 4;
 
-int rounded(int order) { return order > kEvenAbove ? std::min(kMaxOrder, order + order % 2) : std::max(kMinOrder, order); }
+int rounded(int order) {
+  return order > kEvenAbove ? std::min(kMaxOrder, order + order % 2) : std::max(kMinOrder, order);
+}
 
-/// Octaves by which translations of the nearest far pairs may err more than the others: they are few (6, 24 and 24 of the 316 offsets)
-/// and converge slowly, so the same total error costs less this way, and all expansions get shorter.
+/// Octaves by which translations of the nearest far pairs may err more than the others: they are few (6, 24 and 24 of the 316
+/// offsets) and converge slowly, so the same total error costs less this way, and all expansions get shorter.
 double allowance(int squared_distance) {
   if (squared_distance == 4) return 2.0;
   if (squared_distance == 5) return 1.0;
@@ -21,7 +23,8 @@ double allowance(int squared_distance) {
   return 0;
 }
 
-/// Beyond this degree corners dominate a uniform cube as well: a box with all points in a corner is worse by a constant factor only.
+/// Beyond this degree corners dominate a uniform cube as well: a box with all points in a corner is worse by a constant factor
+/// only.
 constexpr int kSpreadDegrees = 16;
 
 std::uint8_t smallest_order(double octaves, double spread, const float (&row)[kMaxOrder + 1]) {
@@ -39,7 +42,7 @@ OrderChoice::OrderChoice() {
       for (std::size_t s = 0; s < kSlots; ++s) {
         Row& row = rows_[std::size_t(squared)][spread];
         const double octaves = double(s) / kStepsPerOctave - allowance(squared), per_degree = double(spread) * kSpreadStep;
-        if (s + 1 == kSlots) {   // stands for everything beyond
+        if (s + 1 == kSlots) {  // stands for everything beyond
           row.potential[s] = row.field[s] = std::uint8_t(kMaxOrder);
           continue;
         }

@@ -1,6 +1,6 @@
 #pragma once
-// Order of each multipole-to-local translation: the smallest whose usual error (medium/coulomb/truncation.hpp) stays within what
-// the target box may bear, given the charges of the source box.
+// Order of each multipole-to-local translation: the smallest whose usual error (medium/coulomb/truncation.hpp) stays within
+// what the target box may bear, given the charges of the source box.
 #include <array>
 #include <cstdint>
 #include <vector>
@@ -12,7 +12,8 @@ namespace farsum {
 
 /// Strength of a source box and error borne by a target box, both as base-2 logarithms in scaled units.
 /// strength_*: of sqrt(sum q^2 + c (sum q)^2). bearable_*: absolute error of one translation.
-/// spread: how much faster than for a uniformly filled cube the terms grow with the degree, octaves per degree, source plus target.
+/// spread: how much faster than for a uniformly filled cube the terms grow with the degree, octaves per degree, source plus
+/// target.
 struct TranslationDemand {
   double strength_potential, strength_field, bearable_potential, bearable_field, spread;
 };
@@ -21,7 +22,8 @@ class OrderChoice {
  public:
   OrderChoice();
 
-  /// Order for boxes of side 2^log_side at a squared centre distance of 4 or more (in sides); kMaxOrder if even that is not enough.
+  /// Order for boxes of side 2^log_side at a squared centre distance of 4 or more (in sides); kMaxOrder if even that is not
+  /// enough.
   int order(int squared_distance, double log_side, const TranslationDemand& d) const noexcept {
     const Row& row = rows_[std::size_t(squared_distance)][spread_slot(d.spread)];
     const int a = row.potential[slot(d.strength_potential - log_side - d.bearable_potential)];
@@ -41,7 +43,7 @@ class OrderChoice {
     return at <= 0 ? 0 : at >= double(kSlots - 1) ? kSlots - 1 : std::size_t(at);
   }
   static constexpr std::size_t kSpreads = 8;
-  static constexpr double kSpreadStep = 0.08;   ///< octaves per degree
+  static constexpr double kSpreadStep = 0.08;  ///< octaves per degree
   static std::size_t spread_slot(double spread) noexcept {
     const double at = spread / kSpreadStep + 0.5;
     return at <= 0 ? 0 : at >= double(kSpreads - 1) ? kSpreads - 1 : std::size_t(at);

@@ -21,7 +21,8 @@ AxisTurn::AxisTurn(int order, long double cosine, long double sine) {
 void AxisTurn::fill_level(int n) {
   std::vector<long double>& level = levels_[std::size_t(n)];
   level.assign(std::size_t((2 * n + 1) * (2 * n + 1)), 0.0L);
-  // The transpose is the rotation by the opposite angle, which a reflection of x undoes: D(column, m) = (-1)^(m + column) D(m, column).
+  // The transpose is the rotation by the opposite angle, which a reflection of x undoes: D(column, m) = (-1)^(m + column) D(m,
+  // column).
   for (int m = -n; m <= n; ++m)
     for (int column = m < 0 ? -n : 0; column <= m; ++column) {
       const long double value = new_entry(n, m, column);
@@ -40,8 +41,9 @@ long double AxisTurn::product(int axis, int n, int a, int b) const {
 long double AxisTurn::new_entry(int n, int m, int column) const {
   const auto root = [&](int k) { return roots_[std::size_t(k)]; };
   const int size = std::abs(m);
-  const long double scale = std::abs(column) == n ? inverse_roots_[std::size_t(2 * n)] * inverse_roots_[std::size_t(2 * n - 1)]
-                                                  : inverse_roots_[std::size_t(n + column)] * inverse_roots_[std::size_t(n - column)];
+  const long double scale = std::abs(column) == n
+                                ? inverse_roots_[std::size_t(2 * n)] * inverse_roots_[std::size_t(2 * n - 1)]
+                                : inverse_roots_[std::size_t(n + column)] * inverse_roots_[std::size_t(n - column)];
   const long double u = root(n + m) * root(n - m) * scale;
   const long double v = (m == 0 ? -0.5L * root(2) : 0.5L) * root(n + size - 1) * root(n + size) * scale;
   const long double w = m == 0 || size >= n - 1 ? 0.0L : -0.5L * root(n - size - 1) * root(n - size) * scale;

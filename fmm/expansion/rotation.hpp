@@ -4,8 +4,8 @@
 
 namespace farsum {
 
-/// Matrices D_n with R_n(Y v) = D_n R_n(v) for the rotation Y: x' = cos x - sin z, z' = sin x + cos z, which takes the direction
-/// (sin, 0, cos) to the z axis. D_n does not mix cosine harmonics (k >= 0) with sine harmonics (k < 0).
+/// Matrices D_n with R_n(Y v) = D_n R_n(v) for the rotation Y: x' = cos x - sin z, z' = sin x + cos z, which takes the
+/// direction (sin, 0, cos) to the z axis. D_n does not mix cosine harmonics (k >= 0) with sine harmonics (k < 0).
 class AxisTurn {
  public:
   /// Recursion of Ivanic & Ruedenberg (J. Phys. Chem. 100, 6342, 1996; 102, 9099, 1998) in extended precision.
@@ -21,7 +21,7 @@ class AxisTurn {
   long double new_entry(int n, int m, int column) const;
 
   std::vector<std::vector<long double>> levels_;
-  std::vector<long double> roots_, inverse_roots_;   ///< of the integers
+  std::vector<long double> roots_, inverse_roots_;  ///< of the integers
 };
 
 }  // namespace farsum

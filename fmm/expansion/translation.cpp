@@ -8,7 +8,7 @@
 namespace farsum {
 namespace {
 
-constexpr int kBlockRows = 4;   // the row blocks of kernels/body_translate.hpp
+constexpr int kBlockRows = 4;  // the row blocks of kernels/body_translate.hpp
 
 /// Appends a matrix in row blocks, each block column by column.
 template <class Real, class Entry>
@@ -20,7 +20,9 @@ void append_blocks(std::vector<Real>& to, int rows, int columns, const Entry& en
   }
 }
 
-BoxOffset corner_of(int octant) { return {octant & 1 ? 1 : -1, octant & 2 ? 1 : -1, octant & 4 ? 1 : -1}; }
+BoxOffset corner_of(int octant) {
+  return {octant & 1 ? 1 : -1, octant & 2 ? 1 : -1, octant & 4 ? 1 : -1};
+}
 
 }  // namespace
 
@@ -102,7 +104,8 @@ void TranslationTables<Real>::make_scales() {
     powers(far_scales_[squared].in, 1, inverse);
     powers(far_scales_[squared].out, inverse, inverse);
   }
-  // A child has half the side: degree n of its multipole counts 2^-n in the parent's units, a local potential coefficient 2^-(n+1).
+  // A child has half the side: degree n of its multipole counts 2^-n in the parent's units, a local potential coefficient
+  // 2^-(n+1).
   powers(up_scales_.in, 1, 1);
   powers(up_scales_.out, 1, 0.5L);
   powers(down_scales_.in, 0.5L, 0.5L);
@@ -117,21 +120,19 @@ void TranslationTables<Real>::make_shifts() {
     for (int m = 0; m <= p; ++m)
       append_blocks(far_shifts_[std::size_t(p)], p - m + 1, p - m + 1,
                     [&](int row, int column) { return shifts.far(m + row, m + column, m); });
-  const long double distance = std::sqrt(3.0L) / 2;   // child centre from parent centre, in sides of the child
+  const long double distance = std::sqrt(3.0L) / 2;  // child centre from parent centre, in sides of the child
   for (int m = 0; m <= order_; ++m) {
     const int size = order_ - m + 1;
-    append_blocks(up_shift_, size, size, [&](int row, int column) {
-      return shifts.child(m + row, m + column, m) * std::pow(distance, row - column);
-    });
-    append_blocks(down_shift_, size, size, [&](int row, int column) {
-      return shifts.child(m + column, m + row, m) * std::pow(distance, column - row);
-    });
+    append_blocks(up_shift_, size, size,
+                  [&](int row, int column) { return shifts.child(m + row, m + column, m) * std::pow(distance, row - column); });
+    append_blocks(down_shift_, size, size,
+                  [&](int row, int column) { return shifts.child(m + column, m + row, m) * std::pow(distance, column - row); });
   }
 }
 
 template <class Real>
 void TranslationTables<Real>::make_recurrence() {
-  const int top = order_ + 1;   // one more for the derivatives of irregular harmonics
+  const int top = order_ + 1;  // one more for the derivatives of irregular harmonics
   recurrence_stride_ = std::size_t(2 * (top + 1));
   recurrence_.assign(recurrence_stride_ * std::size_t(top + 1), Real(0));
   for (int m = 0; m <= top; ++m) {
@@ -149,22 +150,40 @@ template <class Real>
 kernels::Translation<Real> TranslationTables<Real>::far(int offset, int order) const {
   const Direction& direction = directions_[std::size_t(offset)];
   const Scales& scales = far_scales_.at(offset_of(offset).squared());
-  return {order, direction.cos_m.data(), direction.sin_m.data(), direction.turn->forward.data(), direction.turn->back.data(),
-          far_shifts_[std::size_t(order)].data(), scales.in.data(), scales.out.data()};
+  return {order,
+          direction.cos_m.data(),
+          direction.sin_m.data(),
+          direction.turn->forward.data(),
+          direction.turn->back.data(),
+          far_shifts_[std::size_t(order)].data(),
+          scales.in.data(),
+          scales.out.data()};
 }
 
 template <class Real>
 kernels::Translation<Real> TranslationTables<Real>::child_to_parent(int octant) const {
   const Direction& direction = directions_[std::size_t(offset_index(corner_of(octant)))];
-  return {order_, direction.cos_m.data(), direction.sin_m.data(), direction.turn->forward.data(), direction.turn->back.data(),
-          up_shift_.data(), up_scales_.in.data(), up_scales_.out.data()};
+  return {order_,
+          direction.cos_m.data(),
+          direction.sin_m.data(),
+          direction.turn->forward.data(),
+          direction.turn->back.data(),
+          up_shift_.data(),
+          up_scales_.in.data(),
+          up_scales_.out.data()};
 }
 
 template <class Real>
 kernels::Translation<Real> TranslationTables<Real>::parent_to_child(int octant) const {
   const Direction& direction = directions_[std::size_t(offset_index(corner_of(octant)))];
-  return {order_, direction.cos_m.data(), direction.sin_m.data(), direction.turn->forward.data(), direction.turn->back.data(),
-          down_shift_.data(), down_scales_.in.data(), down_scales_.out.data()};
+  return {order_,
+          direction.cos_m.data(),
+          direction.sin_m.data(),
+          direction.turn->forward.data(),
+          direction.turn->back.data(),
+          down_shift_.data(),
+          down_scales_.in.data(),
+          down_scales_.out.data()};
 }
 
 template <class Real>

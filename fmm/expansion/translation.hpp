@@ -52,10 +52,10 @@ class TranslationTables {
 
   int order_;
   Separation separation_;
-  std::map<std::pair<int, int>, Turn> turns_;        ///< by (z, x^2 + y^2)
-  std::vector<Direction> directions_;      ///< far offsets; the children use the corners (+-1, +-1, +-1)
-  std::map<int, Scales> far_scales_;                 ///< by squared distance
-  std::vector<std::vector<Real>> far_shifts_;        ///< by order
+  std::map<std::pair<int, int>, Turn> turns_;  ///< by (z, x^2 + y^2)
+  std::vector<Direction> directions_;          ///< far offsets; the children use the corners (+-1, +-1, +-1)
+  std::map<int, Scales> far_scales_;           ///< by squared distance
+  std::vector<std::vector<Real>> far_shifts_;  ///< by order
   std::vector<Real> up_shift_, down_shift_;
   Scales up_scales_, down_scales_;
   std::vector<Real> recurrence_;

@@ -33,9 +33,11 @@ inline HarmonicInput<Real, vectors> harmonic_input(const PointBlock<Real>& point
   return in;
 }
 
-/// Calls visit(index of C, index of S, cosine, sine) for all degrees and orders; for m = 0 both indices are equal and sine is 0.
+/// Calls visit(index of C, index of S, cosine, sine) for all degrees and orders; for m = 0 both indices are equal and sine is
+/// 0.
 template <class Real, std::size_t vectors, class Visit>
-inline void for_harmonics(const HarmonicInput<Real, vectors>& in, int order, const Recurrence<Real>& recurrence, Visit&& visit) {
+inline void for_harmonics(const HarmonicInput<Real, vectors>& in, int order, const Recurrence<Real>& recurrence,
+                          Visit&& visit) {
   Vec<Real> start_c[vectors], start_s[vectors], c[vectors], s[vectors], last_c[vectors], last_s[vectors];
   for (std::size_t u = 0; u < vectors; ++u) {
     start_c[u] = in.start[u];

@@ -12,7 +12,8 @@ struct PairAccumulator {
 
 /// One vector of sources on one target. `keep` masks lanes (self pair); used only where Masked.
 template <RootAccuracy accuracy, bool mask_zero, bool with_field, bool masked>
-inline void add_pairs(PairAccumulator& sum, const PairSums& a, std::size_t j, double tx, double ty, double tz, MaskDouble keep) {
+inline void add_pairs(PairAccumulator& sum, const PairSums& a, std::size_t j, double tx, double ty, double tz,
+                      MaskDouble keep) {
   const VecDouble dx = tx - load(a.sx + j), dy = ty - load(a.sy + j), dz = tz - load(a.sz + j);
   VecDouble r2 = dx * dx + (dy * dy + dz * dz);
   if constexpr (masked) r2 = keep ? r2 : splat(kFarSquared);
@@ -70,7 +71,8 @@ inline void pair_sums_of(const PairSums& a, std::size_t i) {
     const std::size_t own = std::size_t(self) / kWidth<double> * kWidth<double>;
     plain(0, own);
     for (std::size_t t = 0; t < targets; ++t)
-      add_pairs<accuracy, mask_zero, with_field, true>(sum[t], a, own, tx[t], ty[t], tz[t], others(self + std::ptrdiff_t(t), own));
+      add_pairs<accuracy, mask_zero, with_field, true>(sum[t], a, own, tx[t], ty[t], tz[t],
+                                                       others(self + std::ptrdiff_t(t), own));
     plain(own + kWidth<double>, a.n_sources);
   }
   for (std::size_t t = 0; t < targets; ++t) finish_target<with_field>(a, i + t, sum[t]);

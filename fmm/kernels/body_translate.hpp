@@ -1,7 +1,7 @@
-// Translations M2M, M2L and L2L for a batch of boxes that share the offset: lanes are boxes. With the offset turned to the z axis the
-// translation is one small dense matrix per order m (White & Head-Gordon 1996); about 2 p^3 fused multiply-adds in all.
-// Tables: expansion/translation.hpp. Matrices stand in blocks of kBlockRows rows (the last block may have fewer), each block column
-// by column, so that one load of a lane vector serves all rows of the block.
+// Translations M2M, M2L and L2L for a batch of boxes that share the offset: lanes are boxes. With the offset turned to the z
+// axis the translation is one small dense matrix per order m (White & Head-Gordon 1996); about 2 p^3 fused multiply-adds in
+// all. Tables: expansion/translation.hpp. Matrices stand in blocks of kBlockRows rows (the last block may have fewer), each
+// block column by column, so that one load of a lane vector serves all rows of the block.
 
 namespace farsum::kernels::FARSUM_TARGET {
 
@@ -123,7 +123,8 @@ inline void scatter_lanes(const Vec<Real>* lanes, std::size_t terms, std::size_t
       Vec<Real> block[w];
       for (std::size_t k = 0; k < w; ++k) block[k] = lanes[(i + k) * vectors + u];
       transpose<Real>(block);
-      for (std::size_t k = 0; k < w && u * w + k < count; ++k) store(targets[u * w + k] + i, load(targets[u * w + k] + i) + block[k]);
+      for (std::size_t k = 0; k < w && u * w + k < count; ++k)
+        store(targets[u * w + k] + i, load(targets[u * w + k] + i) + block[k]);
     }
 }
 
@@ -156,8 +157,7 @@ void translate(const Translation<Real>& translation, const Real* const* rows, Re
     for (; i + w < count; i += kBatchVectors * w)
       translate_batch<Real, kBatchVectors>(translation, rows + i, targets + i,
                                            count - i < kBatchVectors * w ? count - i : kBatchVectors * w, lanes);
-  for (; i < count; i += w)
-    translate_batch<Real, 1>(translation, rows + i, targets + i, count - i < w ? count - i : w, lanes);
+  for (; i < count; i += w) translate_batch<Real, 1>(translation, rows + i, targets + i, count - i < w ? count - i : w, lanes);
 }
 
 }  // namespace farsum::kernels::FARSUM_TARGET

@@ -1,6 +1,6 @@
 #pragma once
-// The vector kernels of one CPU target, as plain functions on raw arrays. A kernel allocates nothing, throws nothing, and knows no
-// tree and no task. Every target offers the same table; dispatch.hpp hands out the one for a target.
+// The vector kernels of one CPU target, as plain functions on raw arrays. A kernel allocates nothing, throws nothing, and knows
+// no tree and no task. Every target offers the same table; dispatch.hpp hands out the one for a target.
 #include <cstddef>
 
 #include "fmm/base/padding.hpp"
@@ -9,8 +9,8 @@ namespace farsum::kernels {
 
 /// Arguments of the near-field sums. Adds to potential[i] and field[i], i < n_targets:
 ///   sum_j q_j / r_ij,   sum_j q_j (t_i - s_j) / r_ij^3.
-/// Sources are padded with charge 0 to a multiple of kSourcePad. If self >= 0 (even), target i is source self + i and is left out
-/// of its own sum. Any other pair at zero distance makes nearest_squared[i] = 0 (see mask_zero).
+/// Sources are padded with charge 0 to a multiple of kSourcePad. If self >= 0 (even), target i is source self + i and is left
+/// out of its own sum. Any other pair at zero distance makes nearest_squared[i] = 0 (see mask_zero).
 struct PairSums {
   const double *sx, *sy, *sz, *sq;
   std::size_t n_sources;
@@ -25,14 +25,16 @@ struct PairSums {
 enum class RootAccuracy { fast, full };
 
 /// Sums for error measurement: terms rounded once or twice each, added with compensation. Per target i:
-///   potential[i], field[i] as PairSums with zero distances left out (also of nearest_squared); potential_scale[i] = sum |q_j| / r, field_scale[i] = sum |q_j| / r^2.
+///   potential[i], field[i] as PairSums with zero distances left out (also of nearest_squared); potential_scale[i] = sum |q_j|
+///   / r, field_scale[i] = sum |q_j| / r^2.
 struct ExactSums {
   PairSums sums;
   double *potential_scale, *field_scale;
 };
 
 /// Harmonics of one box, all degrees n <= order, layout of expansion/indexing.hpp.
-/// Points are relative to the expansion centre in units of the box, padded with charge 0 to whole vectors (see project/evaluate).
+/// Points are relative to the expansion centre in units of the box, padded with charge 0 to whole vectors (see
+/// project/evaluate).
 template <class Real>
 struct PointBlock {
   const Real *x, *y, *z, *q;
@@ -45,14 +47,15 @@ inline constexpr std::size_t kRealPad = 64 / sizeof(Real);
 /// rotate the offset to the z axis, shift, rotate back; adds to the targets.
 template <class Real>
 struct Translation {
-  int order;                     ///< degree of input and output
-  const Real *cos_m, *sin_m;     ///< cos(m alpha), sin(m alpha), m = 0..order
-  const Real *turn, *turn_back;  ///< blocks of the rotation about y, per degree: cosine part, sine part (row blocks)
-  const Real* shift;             ///< per m: (order - m + 1)^2 matrix in row blocks
+  int order;                         ///< degree of input and output
+  const Real *cos_m, *sin_m;         ///< cos(m alpha), sin(m alpha), m = 0..order
+  const Real *turn, *turn_back;      ///< blocks of the rotation about y, per degree: cosine part, sine part (row blocks)
+  const Real* shift;                 ///< per m: (order - m + 1)^2 matrix in row blocks
   const Real *scale_in, *scale_out;  ///< per degree
 };
 
-/// Factors of the harmonic recurrences: row m at table + m * stride holds d_m, unused, then a_nm, b_nm for n = m + 1, m + 2, ...
+/// Factors of the harmonic recurrences: row m at table + m * stride holds d_m, unused, then a_nm, b_nm for n = m + 1, m + 2,
+/// ...
 template <class Real>
 struct Recurrence {
   const Real* table;

@@ -29,7 +29,9 @@ using Vec = typename VecOf<Real>::Type;
 template <class Real>
 inline constexpr std::size_t kWidth = FARSUM_VECTOR_BYTES / sizeof(Real);
 
-inline constexpr std::size_t round_up_to(std::size_t n, std::size_t block) { return (n + block - 1) / block * block; }
+inline constexpr std::size_t round_up_to(std::size_t n, std::size_t block) {
+  return (n + block - 1) / block * block;
+}
 
 template <class Real>
 inline Vec<Real> load(const Real* p) {
@@ -62,10 +64,13 @@ inline Real min_lanes(Vec<Real> v) {
   return least;
 }
 
-inline VecDouble min(VecDouble a, VecDouble b) { return a < b ? a : b; }
+inline VecDouble min(VecDouble a, VecDouble b) {
+  return a < b ? a : b;
+}
 
 /// 1 / sqrt(r2). The start value of the instruction set is improved by cubic steps w += w e (1/2 + 3/8 e), e = 1 - r2 w^2,
-/// each of which turns a relative error d into 5/2 d^3. Start 2^-14 (AVX-512), 1.5 * 2^-12 (AVX2); r2 within the float range there.
+/// each of which turns a relative error d into 5/2 d^3. Start 2^-14 (AVX-512), 1.5 * 2^-12 (AVX2); r2 within the float range
+/// there.
 template <RootAccuracy accuracy>
 inline VecDouble reciprocal_root(VecDouble r2) {
 #if defined(__AVX512F__)

@@ -1,5 +1,6 @@
-// Building the octree: Morton keys, one parallel counting sort by the top levels, then level by level a counting sort of each box
-// that is divided. A key reaches kKeyLevels levels; boxes of that depth that must be divided get new keys inside themselves.
+// Building the octree: Morton keys, one parallel counting sort by the top levels, then level by level a counting sort of each
+// box that is divided. A key reaches kKeyLevels levels; boxes of that depth that must be divided get new keys inside
+// themselves.
 #include <algorithm>
 #include <array>
 #include <cmath>
@@ -11,9 +12,9 @@ namespace farsum {
 namespace {
 
 constexpr std::size_t kGrain = 1 << 14;
-constexpr int kPresortLevels = 4;                       // 8^4 buckets of the first sort
+constexpr int kPresortLevels = 4;  // 8^4 buckets of the first sort
 constexpr std::size_t kBuckets = std::size_t{1} << (3 * kPresortLevels);
-constexpr std::size_t kPresortFrom = 1 << 16;           // fewer points go straight to the sort by levels
+constexpr std::size_t kPresortFrom = 1 << 16;  // fewer points go straight to the sort by levels
 
 struct Children {
   std::array<std::uint32_t, 9> begin{};
@@ -23,8 +24,15 @@ class Builder {
  public:
   Builder(const PointsView& points, const PowerOfTwo& scale, const Frame& frame, OctreeLimits limits, Executor& executor,
           MemoryLedger& ledger)
-      : count_(points.count), frame_(frame), limits_(limits), executor_(executor), ledger_(ledger),
-        scaled_(ledger, 3 * points.count), key_(ledger, points.count), key_other_(ledger, points.count), index_(ledger, points.count),
+      : count_(points.count),
+        frame_(frame),
+        limits_(limits),
+        executor_(executor),
+        ledger_(ledger),
+        scaled_(ledger, 3 * points.count),
+        key_(ledger, points.count),
+        key_other_(ledger, points.count),
+        index_(ledger, points.count),
         index_other_(ledger, points.count) {
     copy_scaled(points, scale);
   }
@@ -99,8 +107,7 @@ class Builder {
     std::uint32_t next = 0;
     for (std::size_t bucket = 0; bucket < kBuckets; ++bucket) {
       bucket_begin_[bucket] = next;
-      for (std::size_t piece = 0; piece < pieces; ++piece)
-        next += std::exchange(counts[piece * kBuckets + bucket], next);
+      for (std::size_t piece = 0; piece < pieces; ++piece) next += std::exchange(counts[piece * kBuckets + bucket], next);
     }
     bucket_begin_[kBuckets] = next;
     executor_.for_each(n, kPieceSize, [&](std::size_t begin, std::size_t end, int) {
@@ -155,7 +162,8 @@ class Builder {
         std::size_t(interleave(std::uint32_t(box.place[0]), std::uint32_t(box.place[1]), std::uint32_t(box.place[2])));
     const int shift = 3 * (kPresortLevels - 1 - box.level);
     Children children;
-    for (std::size_t octant = 0; octant <= 8; ++octant) children.begin[octant] = bucket_begin_[((prefix << 3) + octant) << shift];
+    for (std::size_t octant = 0; octant <= 8; ++octant)
+      children.begin[octant] = bucket_begin_[((prefix << 3) + octant) << shift];
     return children;
   }
 
@@ -238,8 +246,8 @@ std::size_t Octree::leaves() const noexcept {
   return std::size_t(std::count_if(boxes.begin(), boxes.end(), [](const Box& box) { return box.leaf(); }));
 }
 
-Octree build_octree(const PointsView& points, const PowerOfTwo& scale, const Frame& frame, OctreeLimits limits, Executor& executor,
-                    MemoryLedger& ledger) {
+Octree build_octree(const PointsView& points, const PowerOfTwo& scale, const Frame& frame, OctreeLimits limits,
+                    Executor& executor, MemoryLedger& ledger) {
   return Builder(points, scale, frame, limits, executor, ledger).build();
 }
 

@@ -7,7 +7,9 @@
 namespace farsum {
 namespace {
 
-auto coordinates(const Octree& tree, std::uint32_t k) { return std::tuple(tree.x[k], tree.y[k], tree.z[k]); }
+auto coordinates(const Octree& tree, std::uint32_t k) {
+  return std::tuple(tree.x[k], tree.y[k], tree.z[k]);
+}
 
 /// partner[k] = the tree place of the first point (in the caller's order) that equals point k.
 void pair_up_leaf(const Octree& tree, const Box& leaf, std::uint32_t* partner) {

@@ -9,7 +9,8 @@
 
 namespace farsum {
 
-/// The distinct places of a set of points: place_of[i] is the place of the caller's point i, first[p] the point that stands for place p.
+/// The distinct places of a set of points: place_of[i] is the place of the caller's point i, first[p] the point that stands for
+/// place p.
 struct DistinctPlaces {
   std::vector<std::uint32_t> place_of, first;
 };

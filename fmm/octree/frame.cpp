@@ -28,7 +28,9 @@ Frame::Frame(const Bounds& bounds, double side, double middle) : side_(side) {
   }
 }
 
-double Frame::box_side(int level) const noexcept { return std::ldexp(side_, -level); }
+double Frame::box_side(int level) const noexcept {
+  return std::ldexp(side_, -level);
+}
 
 std::array<double, 3> Frame::padding_place() const noexcept {
   std::array<double, 3> place = corner_;

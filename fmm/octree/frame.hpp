@@ -1,6 +1,6 @@
 #pragma once
-// The cubic lattice on which boxes lie. A box of level l has side S / 2^l and integer coordinates in [0, 2^l) from the frame's corner.
-// Coordinates of points are scaled (domain/scaling.hpp): the extent is about one, offsets from the origin may be large.
+// The cubic lattice on which boxes lie. A box of level l has side S / 2^l and integer coordinates in [0, 2^l) from the frame's
+// corner. Coordinates of points are scaled (domain/scaling.hpp): the extent is about one, offsets from the origin may be large.
 #include <array>
 #include <cstdint>
 
@@ -23,7 +23,8 @@ struct DoubleDouble {
 class Frame {
  public:
   Frame() = default;
-  /// Cube of the given side in which the middle of the bounds lies at the fraction `middle` of the side; it must hold the bounds.
+  /// Cube of the given side in which the middle of the bounds lies at the fraction `middle` of the side; it must hold the
+  /// bounds.
   Frame(const Bounds& bounds, double side, double middle = 0.5);
 
   double side() const noexcept { return side_; }
@@ -42,7 +43,7 @@ class Frame {
  private:
   std::array<double, 3> corner_{};
   double side_ = 1;
-  DoubleDouble units_per_length_{0x1p60, 0};   ///< 2^kMaxLevel / side
+  DoubleDouble units_per_length_{0x1p60, 0};  ///< 2^kMaxLevel / side
 };
 
 /// Interleaves the low 21 bits of three coordinates: bits ... z1 y1 x1 z0 y0 x0.

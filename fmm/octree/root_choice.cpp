@@ -6,8 +6,8 @@
 namespace farsum {
 namespace {
 
-constexpr double kMiddle = 3.0 / 7;      // binary 0.011011...: its distance from multiples of 2^-l is at least 2^-l / 7
-constexpr double kLeastFactor = 1.17;    // side / extent at least 1 / (2 kMiddle), with a margin for rounding
+constexpr double kMiddle = 3.0 / 7;    // binary 0.011011...: its distance from multiples of 2^-l is at least 2^-l / 7
+constexpr double kLeastFactor = 1.17;  // side / extent at least 1 / (2 kMiddle), with a margin for rounding
 
 /// Points in a box of side h if they fill the bounds evenly.
 double points_in_box(const Bounds& bounds, double n, double h) {

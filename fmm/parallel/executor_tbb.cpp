@@ -18,7 +18,9 @@ Executor::Executor(int limit) {
 }
 Executor::~Executor() = default;
 
-int Executor::threads() const noexcept { return backend_->arena.max_concurrency(); }
+int Executor::threads() const noexcept {
+  return backend_->arena.max_concurrency();
+}
 
 void Executor::for_each(std::size_t count, std::size_t grain, const Body& body) {
   if (count == 0) return;

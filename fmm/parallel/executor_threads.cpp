@@ -32,7 +32,9 @@ Executor::Executor(int limit) : backend_(std::make_unique<Backend>()) {
 }
 Executor::~Executor() = default;
 
-int Executor::threads() const noexcept { return backend_->threads; }
+int Executor::threads() const noexcept {
+  return backend_->threads;
+}
 
 void Executor::for_each(std::size_t count, std::size_t grain, const Body& body) {
   if (count == 0) return;

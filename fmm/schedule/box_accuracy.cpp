@@ -8,8 +8,9 @@
 namespace farsum {
 namespace {
 
-/// Weight of the squared total charge of a box beside the sum of squares: errors of one-sign boxes add coherently, but neighbours in
-/// a smooth density cancel most of that. Calibrated on uniform cubes, shells, planes and lines of one sign, t = 1e-3..1e-12.
+/// Weight of the squared total charge of a box beside the sum of squares: errors of one-sign boxes add coherently, but
+/// neighbours in a smooth density cancel most of that. Calibrated on uniform cubes, shells, planes and lines of one sign, t =
+/// 1e-3..1e-12.
 constexpr double kPotentialCoherence = 1.0, kFieldCoherence = 0.25;
 /// Fraction of the nearest-neighbour field q / d^2 of a box (d = mean spacing) that its targets are sure to feel.
 constexpr double kLocalShare = 0.5;
@@ -18,8 +19,8 @@ constexpr double kFarShare = 0.4;
 /// Power of the ratio of least to local field that allows for zeros of the field.
 constexpr double kFieldZeros = 0.1;
 
-/// Power of the squared radius whose mean stands for the far terms, and octaves per degree for each octave of the radius; a box whose
-/// points all sit in one corner gets 0.3 octaves per degree.
+/// Power of the squared radius whose mean stands for the far terms, and octaves per degree for each octave of the radius; a box
+/// whose points all sit in one corner gets 0.3 octaves per degree.
 constexpr double kSpreadPower = 6, kSpreadFactor = 0.45;
 
 struct Moments {
@@ -48,11 +49,11 @@ std::vector<Moments> charge_moments(const EvaluationJob& job) {
 struct Spread {
   double weight = 0;
   std::array<double, 3> place{};
-  double variance = 0.25;   // of a uniform cube
+  double variance = 0.25;  // of a uniform cube
 };
 
-/// Octaves per degree by which far terms of a box grow faster than those of a uniformly filled one: points that crowd into a corner are
-/// farther from the centre. From the places of the children's points.
+/// Octaves per degree by which far terms of a box grow faster than those of a uniformly filled one: points that crowd into a
+/// corner are farther from the centre. From the places of the children's points.
 std::vector<float> spreads(const Octree& tree) {
   std::vector<Spread> spread(tree.boxes.size());
   std::vector<float> result(tree.boxes.size(), 0.0f);
@@ -76,14 +77,15 @@ std::vector<float> spreads(const Octree& tree) {
     }
     own.variance = second;
     for (double p : own.place) own.variance -= p * p;
-    const double radius2 = std::pow(high, 1.0 / kSpreadPower) / 0.25;   // 1 for a uniform cube
+    const double radius2 = std::pow(high, 1.0 / kSpreadPower) / 0.25;  // 1 for a uniform cube
     result[b] = float(kSpreadFactor * 0.5 * std::max(0.0, std::log2(radius2)));
   }
   return result;
 }
 
 bool has_both_signs(const std::vector<Moments>& moments) {
-  // A box of n charges of one sign has a sum of at least the root of its sum of squares; opposite boxes show in the signs of the sums.
+  // A box of n charges of one sign has a sum of at least the root of its sum of squares; opposite boxes show in the signs of
+  // the sums.
   bool positive = false, negative = false;
   for (const Moments& m : moments) {
     positive = positive || m.sum > 0;
@@ -92,7 +94,9 @@ bool has_both_signs(const std::vector<Moments>& moments) {
   return positive && negative;
 }
 
-float logarithm(double value) { return value > 0 ? float(std::log2(value)) : -std::numeric_limits<float>::infinity(); }
+float logarithm(double value) {
+  return value > 0 ? float(std::log2(value)) : -std::numeric_limits<float>::infinity();
+}
 
 /// Potential and field of the total charges of far boxes at the centre of a target box.
 struct FarEstimate {
@@ -123,7 +127,8 @@ std::vector<FarEstimate> far_estimates(const EvaluationJob& job, const NearLists
       for (std::size_t axis = 0; axis < 3; ++axis) sum.field[axis] += w * d[axis] / r2;
     };
     if (!target.leaf())
-      for_child_relations(sources, near.begin(target.parent), near.end(target.parent), target, rule, [](const ListEntry&) {}, add, add);
+      for_child_relations(
+          sources, near.begin(target.parent), near.end(target.parent), target, rule, [](const ListEntry&) {}, add, add);
     estimates[b] = sum;
   };
   for (std::size_t level = 1; level + 1 < targets.level_begin.size(); ++level) {
@@ -185,7 +190,8 @@ BoxAccuracy box_accuracy(const EvaluationJob& job, const NearLists& near, const 
       if (boxes[b].leaf()) leaf_limits(b);
   });
   for (std::size_t b = boxes.size(); b-- > 1;) {
-    accuracy.bearable_potential[boxes[b].parent] = std::min(accuracy.bearable_potential[boxes[b].parent], accuracy.bearable_potential[b]);
+    accuracy.bearable_potential[boxes[b].parent] =
+        std::min(accuracy.bearable_potential[boxes[b].parent], accuracy.bearable_potential[b]);
     accuracy.bearable_field[boxes[b].parent] = std::min(accuracy.bearable_field[boxes[b].parent], accuracy.bearable_field[b]);
   }
   return accuracy;

@@ -16,9 +16,7 @@ struct BoxAccuracy {
   std::vector<float> source_spread, target_spread;        ///< by box: octaves per degree, see TranslationDemand
   float base_field = 0, base_potential = 0;               ///< what the survey alone allows
 
-  std::size_t bytes() const noexcept {
-    return sizeof(float) * (3 * strength_potential.size() + 3 * bearable_field.size());
-  }
+  std::size_t bytes() const noexcept { return sizeof(float) * (3 * strength_potential.size() + 3 * bearable_field.size()); }
   TranslationDemand demand(std::size_t target, std::size_t source) const noexcept {
     return {strength_potential[source], strength_field[source], bearable_potential[target], bearable_field[target],
             source_spread[source] + target_spread[target]};
@@ -28,8 +26,8 @@ struct BoxAccuracy {
 /// Fraction of the bearable error of a target that one translation may take.
 inline constexpr double kErrorShare = 1.0 / 32;
 
-/// For a tolerance. Where the field is stronger than elsewhere a target bears more: that strength is estimated from the total charges
-/// of far boxes and from the density of the target's own neighbours.
+/// For a tolerance. Where the field is stronger than elsewhere a target bears more: that strength is estimated from the total
+/// charges of far boxes and from the density of the target's own neighbours.
 BoxAccuracy box_accuracy(const EvaluationJob& job, const NearLists& near, const DirectRule& rule, const AllowedError& allowed,
                          double tolerance);
 

@@ -11,7 +11,7 @@
 namespace farsum {
 namespace {
 
-constexpr double kSmallestSquared = 0x1p-120;   // (2^-60)^2 of an extent between 1/2 and 1
+constexpr double kSmallestSquared = 0x1p-120;  // (2^-60)^2 of an extent between 1/2 and 1
 constexpr double kFarSquared = 1e300;
 
 double squared_distance(const Octree& a, std::size_t i, const Octree& b, std::size_t j) {
@@ -81,8 +81,8 @@ void nearest_in_leaves(const Octree& tree, double* nearest_squared, Executor& ex
 
 void throw_close_pair(const PointsView& positions, std::size_t a, std::size_t b) {
   const std::ptrdiff_t at_a = std::ptrdiff_t(a) * positions.stride, at_b = std::ptrdiff_t(b) * positions.stride;
-  const bool equal =
-      positions.x[at_a] == positions.x[at_b] && positions.y[at_a] == positions.y[at_b] && positions.z[at_a] == positions.z[at_b];
+  const bool equal = positions.x[at_a] == positions.x[at_b] && positions.y[at_a] == positions.y[at_b] &&
+                     positions.z[at_a] == positions.z[at_b];
   const std::string names = "charges " + std::to_string(std::min(a, b)) + " and " + std::to_string(std::max(a, b));
   if (equal)
     throw Error(ErrorCode::coincident_charges, names + " are both at " + place_text(positions, std::min(a, b)),
@@ -97,7 +97,8 @@ void throw_target_on_charge(const PointsView& positions, std::size_t target, std
   if (exactly)
     throw Error(ErrorCode::target_on_charge, names + " are both at " + place_text(positions, source),
                 "move the target, or ask to skip coincident pairs: the target then gets the value of all other charges");
-  throw Error(ErrorCode::range_exceeded, names + " are nearer than 2^-60 of the extent of everything", "move or leave out the target");
+  throw Error(ErrorCode::range_exceeded, names + " are nearer than 2^-60 of the extent of everything",
+              "move or leave out the target");
 }
 
 std::string short_number(double value) {
@@ -105,7 +106,8 @@ std::string short_number(double value) {
   const auto end = std::to_chars(text.data(), text.data() + text.size(), value, std::chars_format::general, 3);
   std::string result(text.data(), end.ptr);
   const std::size_t exponent = result.find('e');
-  if (exponent != std::string::npos && exponent + 2 < result.size() && result[exponent + 2] == '0') result.erase(exponent + 2, 1);
+  if (exponent != std::string::npos && exponent + 2 < result.size() && result[exponent + 2] == '0')
+    result.erase(exponent + 2, 1);
   return result;
 }
 

@@ -9,9 +9,9 @@
 namespace farsum {
 
 struct ClosestPair {
-  double squared = 0;          ///< smallest squared distance over all targets, scaled
-  bool too_close = false;      ///< equal places, or below the range of the contract
-  std::uint32_t target = 0, source = 0;   ///< caller's indices of the first such pair; set only if too_close
+  double squared = 0;                    ///< smallest squared distance over all targets, scaled
+  bool too_close = false;                ///< equal places, or below the range of the contract
+  std::uint32_t target = 0, source = 0;  ///< caller's indices of the first such pair; set only if too_close
 };
 
 ClosestPair closest_pair(const Octree& sources, const Octree& targets, const double* nearest_squared);

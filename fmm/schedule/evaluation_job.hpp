@@ -15,8 +15,8 @@
 namespace farsum {
 
 /// Results in tree order, delivered to the caller at the end. Distinct targets may be stored by several threads.
-/// Storing straight to the caller's arrays costs far more: the tree's order is random to the caller's, and each of the four stores of
-/// a target misses the address cache (0.2 s for 10^6 targets in small pages, against 0.03 s this way).
+/// Storing straight to the caller's arrays costs far more: the tree's order is random to the caller's, and each of the four
+/// stores of a target misses the address cache (0.2 s for 10^6 targets in small pages, against 0.03 s this way).
 class ResultBuffer {
  public:
   ResultBuffer(std::size_t targets, MemoryLedger& ledger) : ledger_(ledger), values_(ledger, kColumns * targets) {}
@@ -41,16 +41,16 @@ class ResultBuffer {
 
 struct EvaluationJob {
   const Octree& sources;
-  const double* charges;      ///< in tree order, scaled, padded
-  const Octree& targets;      ///< the same object where targets are the charges
+  const double* charges;  ///< in tree order, scaled, padded
+  const Octree& targets;  ///< the same object where targets are the charges
   bool with_field;
-  bool mask_zero;             ///< pairs at zero distance are left out instead of found and refused
+  bool mask_zero;  ///< pairs at zero distance are left out instead of found and refused
   kernels::RootAccuracy root_accuracy;
   const kernels::KernelTable& kernels;
   Executor& executor;
   MemoryLedger& ledger;
   ResultBuffer& results;
-  double* nearest_squared;    ///< per target in tree order; smallest squared distance to a source that is not the target itself
+  double* nearest_squared;  ///< per target in tree order; smallest squared distance to a source that is not the target itself
   const Options& options;
 
   bool same_points() const noexcept { return &sources == &targets; }

@@ -1,5 +1,5 @@
-// Local expansions of all target boxes: far boxes of the same level by translations grouped by offset and order, coarse leaves by their
-// charges, and what the parent has, level by level from the root.
+// Local expansions of all target boxes: far boxes of the same level by translations grouped by offset and order, coarse leaves
+// by their charges, and what the parent has, level by level from the root.
 #include <algorithm>
 #include <cmath>
 
@@ -56,7 +56,8 @@ class LevelTask {
       if (b > 0) collect(b);
     }
     bins_.sort();
-    bins_.for_groups([&](int offset, int order, const FarPair* first, const FarPair* last) { translate(offset, order, first, last); });
+    bins_.for_groups(
+        [&](int offset, int order, const FarPair* first, const FarPair* last) { translate(offset, order, first, last); });
   }
 
  private:
@@ -83,11 +84,11 @@ class LevelTask {
   void project_coarse(std::size_t b, const Box& source) {
     const Octree& targets = work_.job.targets;
     const Box& target = targets.boxes[b];
-    const kernels::PointBlock<Real> points =
-        relative_points<Real>(work_.job.sources, work_.job.charges, source.begin, source.end,
-                              targets.frame.centre(target.place, target.level), targets.frame.box_side(target.level),
-                              work_.job.ledger, scratch_.points);
-    work_.kernels().project(points, work_.plan.order, true, work_.tables.recurrence(), work_.local.row(b), scratch_.kernel.data());
+    const kernels::PointBlock<Real> points = relative_points<Real>(
+        work_.job.sources, work_.job.charges, source.begin, source.end, targets.frame.centre(target.place, target.level),
+        targets.frame.box_side(target.level), work_.job.ledger, scratch_.points);
+    work_.kernels().project(points, work_.plan.order, true, work_.tables.recurrence(), work_.local.row(b),
+                            scratch_.kernel.data());
   }
 
   void translate(int offset, int order, const FarPair* first, const FarPair* last) {
@@ -97,8 +98,8 @@ class LevelTask {
       scratch_.rows.push_back(work_.multipole.row(pair->source));
       scratch_.targets.push_back(work_.local.row(pair->target));
     }
-    work_.kernels().translate(work_.tables.far(offset, order), scratch_.rows.data(), scratch_.targets.data(), scratch_.rows.size(),
-                              scratch_.kernel.data());
+    work_.kernels().translate(work_.tables.far(offset, order), scratch_.rows.data(), scratch_.targets.data(),
+                              scratch_.rows.size(), scratch_.kernel.data());
   }
 
   TreeWork<Real>& work_;
@@ -121,8 +122,8 @@ void hand_down(TreeWork<Real>& work, std::size_t begin, std::size_t end, WorkerS
           work.has_local[child] = 1;
         }
     }
-    work.kernels().translate(work.tables.parent_to_child(octant), scratch.rows.data(), scratch.targets.data(), scratch.rows.size(),
-                             scratch.kernel.data());
+    work.kernels().translate(work.tables.parent_to_child(octant), scratch.rows.data(), scratch.targets.data(),
+                             scratch.rows.size(), scratch.kernel.data());
   }
 }
 

@@ -1,4 +1,5 @@
-// What target leaves get at the end: their local expansion at the targets, multipoles of fine boxes, and all near charges pair by pair.
+// What target leaves get at the end: their local expansion at the targets, multipoles of fine boxes, and all near charges pair
+// by pair.
 #include <algorithm>
 #include <array>
 #include <numeric>
@@ -11,12 +12,12 @@ namespace {
 constexpr std::size_t kLeavesPerTask = 16;
 constexpr std::size_t kTasksBetweenCheckpoints = 512;
 constexpr double kFarSquared = 1e300;
-constexpr std::size_t kSourceBuffer = 4096;   // sources gathered before the kernel runs: 128 KiB in second-level cache
+constexpr std::size_t kSourceBuffer = 4096;  // sources gathered before the kernel runs: 128 KiB in second-level cache
 
 /// Results of the targets of one leaf, and the near sources gathered for them.
 struct LeafScratch {
   std::vector<double> potential, x, y, z;
-  AlignedArray<double> sources;    // x, y, z, q columns
+  AlignedArray<double> sources;  // x, y, z, q columns
   std::size_t capacity = 0, count = 0;
 
   void start(std::size_t targets) {
@@ -57,8 +58,8 @@ class LeafTask {
   void add_expansion(const Box& leaf, const std::array<DoubleDouble, 3>& centre, double side, int order, bool irregular,
                      const Real* const (&rows)[4]) {
     const int n_rows = job_.with_field ? 4 : 1;
-    const kernels::PointBlock<Real> points = relative_points<Real>(job_.targets, nullptr, leaf.begin, leaf.end, centre, side,
-                                                                   job_.ledger, scratch_.points, 4);
+    const kernels::PointBlock<Real> points =
+        relative_points<Real>(job_.targets, nullptr, leaf.begin, leaf.end, centre, side, job_.ledger, scratch_.points, 4);
     Real* const base = scratch_.points.data() + 4 * points.count;
     Real* const values[4] = {base, base + points.count, base + 2 * points.count, base + 3 * points.count};
     work_.kernels().evaluate(points, order, irregular, work_.tables.recurrence(), rows, n_rows, values);
@@ -101,14 +102,16 @@ class LeafTask {
     }
     const Box& source = job_.sources.boxes[s];
     const Frame& frame = job_.sources.frame;
-    add_expansion(leaf, frame.centre(source.place, source.level), frame.box_side(source.level), order, true, {row, g[0], g[1], g[2]});
+    add_expansion(leaf, frame.centre(source.place, source.level), frame.box_side(source.level), order, true,
+                  {row, g[0], g[1], g[2]});
   }
 
   void append_sources(const Box& leaf, std::uint32_t begin, std::uint32_t end) {
     while (begin < end) {
       if (sums_.count + (end - begin) > kSourceBuffer && sums_.count > 0) sum_pairs(leaf);
       // The leaf's own sources stay together: they are the partners of the targets.
-      const std::uint32_t n = self_pending_ && sums_.count == 0 ? end - begin : std::min<std::uint32_t>(end - begin, kSourceBuffer);
+      const std::uint32_t n =
+          self_pending_ && sums_.count == 0 ? end - begin : std::min<std::uint32_t>(end - begin, kSourceBuffer);
       reserve(sums_.count + n);
       const Octree& s = job_.sources;
       std::copy_n(s.x.data() + begin, n, sums_.column(0) + sums_.count);
@@ -124,7 +127,8 @@ class LeafTask {
     const std::size_t needed = round_up(std::max(n, kSourceBuffer), kSourcePad);
     if (needed <= sums_.capacity) return;
     AlignedArray<double> larger(job_.ledger, 4 * needed);
-    for (std::size_t c = 0; c < 4; ++c) std::copy_n(sums_.sources.data() + c * sums_.capacity, sums_.count, larger.data() + c * needed);
+    for (std::size_t c = 0; c < 4; ++c)
+      std::copy_n(sums_.sources.data() + c * sums_.capacity, sums_.count, larger.data() + c * needed);
     sums_.sources = std::move(larger);
     sums_.capacity = needed;
   }
@@ -138,11 +142,11 @@ class LeafTask {
       sums_.column(3)[k] = 0;
     }
     const Octree& t = job_.targets;
-    job_.kernels.pair_sums({sums_.column(0), sums_.column(1), sums_.column(2), sums_.column(3), padded, t.x.data() + leaf.begin,
-                            t.y.data() + leaf.begin, t.z.data() + leaf.begin, leaf.count(), self_pending_ ? 0 : -1,
-                            sums_.potential.data(), sums_.x.data(), sums_.y.data(), sums_.z.data(),
-                            job_.nearest_squared + leaf.begin},
-                           job_.root_accuracy, job_.mask_zero, job_.with_field);
+    job_.kernels.pair_sums(
+        {sums_.column(0), sums_.column(1), sums_.column(2), sums_.column(3), padded, t.x.data() + leaf.begin,
+         t.y.data() + leaf.begin, t.z.data() + leaf.begin, leaf.count(), self_pending_ ? 0 : -1, sums_.potential.data(),
+         sums_.x.data(), sums_.y.data(), sums_.z.data(), job_.nearest_squared + leaf.begin},
+        job_.root_accuracy, job_.mask_zero, job_.with_field);
     sums_.count = 0;
     self_pending_ = false;
   }
@@ -152,7 +156,7 @@ class LeafTask {
   WorkerScratch<Real>& scratch_;
   LeafScratch& sums_;
   std::vector<Real> extended_;
-  bool self_pending_ = false;   ///< the buffer begins with the leaf's own sources
+  bool self_pending_ = false;  ///< the buffer begins with the leaf's own sources
 };
 
 }  // namespace
@@ -163,7 +167,8 @@ void leaf_pass(TreeWork<Real>& work) {
   std::vector<std::uint32_t> leaves;
   for (std::uint32_t b = 0; b < tree.boxes.size(); ++b)
     if (tree.boxes[b].leaf()) leaves.push_back(b);
-  std::sort(leaves.begin(), leaves.end(), [&](std::uint32_t a, std::uint32_t b) { return tree.boxes[a].begin < tree.boxes[b].begin; });
+  std::sort(leaves.begin(), leaves.end(),
+            [&](std::uint32_t a, std::uint32_t b) { return tree.boxes[a].begin < tree.boxes[b].begin; });
   std::vector<LeafScratch> sums(work.scratch.size());
   constexpr std::size_t kStride = kLeavesPerTask * kTasksBetweenCheckpoints;
   for (std::size_t first = 0; first < leaves.size(); first += kStride) {

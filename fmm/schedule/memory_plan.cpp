@@ -11,17 +11,21 @@
 namespace farsum {
 namespace {
 
-constexpr double kSortBytes = 3 * sizeof(double) + 2 * (sizeof(std::uint64_t) + sizeof(std::uint32_t));   // keys and indices twice
-constexpr double kPointBytes = 3 * sizeof(double) + sizeof(std::uint32_t);            // ordered coordinates and index
-constexpr double kSourceBytes = sizeof(double), kTargetBytes = 5 * sizeof(double);   // ordered charge; nearest distance, results
-constexpr double kNearEntries = 25;                                                   // of a box, on average
-constexpr double kBoxBytes = 2 * sizeof(Box) + kNearEntries * sizeof(ListEntry) + 80;  // vectors grow by doubling; accuracy tables
+constexpr double kSortBytes =
+    3 * sizeof(double) + 2 * (sizeof(std::uint64_t) + sizeof(std::uint32_t));       // keys and indices twice
+constexpr double kPointBytes = 3 * sizeof(double) + sizeof(std::uint32_t);          // ordered coordinates and index
+constexpr double kSourceBytes = sizeof(double), kTargetBytes = 5 * sizeof(double);  // ordered charge; nearest distance, results
+constexpr double kNearEntries = 25;                                                 // of a box, on average
+constexpr double kBoxBytes =
+    2 * sizeof(Box) + kNearEntries * sizeof(ListEntry) + 80;  // vectors grow by doubling; accuracy tables
 
 double row_bytes(int order, bool single_precision) {
-  return single_precision ? double(row_length<float>(order) * sizeof(float)) : double(row_length<double>(order) * sizeof(double));
+  return single_precision ? double(row_length<float>(order) * sizeof(float))
+                          : double(row_length<double>(order) * sizeof(double));
 }
 
-std::uint64_t total(double sources, double targets, double source_boxes, double target_boxes, bool same, bool tree, double row) {
+std::uint64_t total(double sources, double targets, double source_boxes, double target_boxes, bool same, bool tree,
+                    double row) {
   const double points = same ? sources : sources + targets, boxes = same ? source_boxes : source_boxes + target_boxes;
   const double sort_peak = points * std::max(kSortBytes, kPointBytes);
   double evaluation = points * kPointBytes + sources * kSourceBytes + targets * kTargetBytes + boxes * 2 * sizeof(Box);
@@ -32,7 +36,7 @@ std::uint64_t total(double sources, double targets, double source_boxes, double 
 }  // namespace
 
 std::uint64_t predicted_bytes(const MemoryQuery& q) noexcept {
-  constexpr double kBoxesPerLeaf = 8.0 / 7 * 1.15;   // the levels above, and partly filled boxes at the faces of the set
+  constexpr double kBoxesPerLeaf = 8.0 / 7 * 1.15;  // the levels above, and partly filled boxes at the faces of the set
   const double source_boxes = kBoxesPerLeaf * double(q.sources) / q.leaf_fill + 9,
                target_boxes = kBoxesPerLeaf * double(q.targets) / q.leaf_fill + 9;
   return total(double(q.sources), double(q.targets), source_boxes, target_boxes, q.same_points, q.tree,

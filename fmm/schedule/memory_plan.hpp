@@ -1,5 +1,6 @@
 #pragma once
-// Memory of an evaluation, predicted: before the tree from the number of points and the tolerance alone, afterwards from its boxes.
+// Memory of an evaluation, predicted: before the tree from the number of points and the tolerance alone, afterwards from its
+// boxes.
 #include <cstddef>
 #include <cstdint>
 
@@ -10,9 +11,9 @@ namespace farsum {
 struct MemoryQuery {
   std::size_t sources = 0, targets = 0;
   bool same_points = true;
-  bool tree = true;             ///< expansions, or a direct sum
+  bool tree = true;  ///< expansions, or a direct sum
   double tolerance = 1e-6;
-  double leaf_fill = 40;        ///< mean number of points in a leaf
+  double leaf_fill = 40;  ///< mean number of points in a leaf
 };
 
 /// For points spread evenly. Bytes beyond the caller's arrays.

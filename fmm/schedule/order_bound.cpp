@@ -7,7 +7,8 @@
 namespace farsum {
 namespace {
 
-/// Growth of the truncation error for each degree that is left out, and the part of the squared tolerance that may be lost to capping.
+/// Growth of the truncation error for each degree that is left out, and the part of the squared tolerance that may be lost to
+/// capping.
 constexpr double kGrowth = 1.8, kCappedPart = 0.05;
 /// Expansions of unequal boxes are judged as the nearest far pair of boxes of one level.
 constexpr int kNearestSquared = 5;
@@ -52,9 +53,8 @@ class Collector {
     const std::vector<Box>& sources = job_.sources.boxes;
     const Box& target = job_.targets.boxes[b];
     const double log_side = std::log2(job_.targets.frame.box_side(target.level));
-    const double weight =
-        job_.with_field ? std::exp2(2.0 * (accuracy_.bearable_field[b] - accuracy_.base_field))
-                        : std::exp2(2.0 * (accuracy_.bearable_potential[b] - accuracy_.base_potential));
+    const double weight = job_.with_field ? std::exp2(2.0 * (accuracy_.bearable_field[b] - accuracy_.base_field))
+                                          : std::exp2(2.0 * (accuracy_.bearable_potential[b] - accuracy_.base_potential));
     const auto consider = [&](std::uint32_t s, int squared, double side) {
       const int order = orders_.order(squared, side, accuracy_.demand(b, s));
       demand.add(order, target.count(), weight);
@@ -98,7 +98,8 @@ OrderSurvey order_bound(const EvaluationJob& job, const NearLists& near, const D
   for (const Demand& part : parts) demand.join(part);
   OrderSurvey survey;
   survey.order = kMaxOrder;
-  while (survey.order > kMinOrder && demand.capped(survey.order - 1, double(job.targets.count) / double(stride)) <= kCappedPart) --survey.order;
+  while (survey.order > kMinOrder && demand.capped(survey.order - 1, double(job.targets.count) / double(stride)) <= kCappedPart)
+    --survey.order;
   for (int p = 0; p <= kMaxOrder; ++p) {
     survey.pairs += demand.pairs[std::size_t(p)];
     survey.mean_order += demand.pairs[std::size_t(p)] * std::min(p, survey.order);

@@ -6,9 +6,9 @@
 namespace farsum {
 
 struct OrderSurvey {
-  int order = kMinOrder;      ///< kept by every expansion
-  double pairs = 0;           ///< translations between boxes of one level
-  double mean_order = 0;      ///< of those
+  int order = kMinOrder;  ///< kept by every expansion
+  double pairs = 0;       ///< translations between boxes of one level
+  double mean_order = 0;  ///< of those
 };
 
 /// The smallest order with which the few translations that would want a higher one add little to either norm of the contract.

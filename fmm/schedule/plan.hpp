@@ -6,8 +6,8 @@
 namespace farsum {
 
 struct EvaluationPlan {
-  Method method = Method::direct;           ///< direct or tree
-  double tolerance = 0;                     ///< what the passes aim at: the caller's, or tightened in a retry
+  Method method = Method::direct;  ///< direct or tree
+  double tolerance = 0;            ///< what the passes aim at: the caller's, or tightened in a retry
   kernels::RootAccuracy root_accuracy = kernels::RootAccuracy::full;
 };
 

@@ -32,7 +32,8 @@ Options checked(Options options) {
     throw Error(ErrorCode::invalid_argument, "tolerance " + std::to_string(options.tolerance) + " is out of range",
                 "choose a tolerance from 1e-13 to 1e-2");
   if (options.threads < 0) throw Error(ErrorCode::invalid_argument, "the number of threads is negative", "use 0 for all");
-  if (options.leaf_capacity < 0) throw Error(ErrorCode::invalid_argument, "the leaf capacity is negative", "use 0 for automatic");
+  if (options.leaf_capacity < 0)
+    throw Error(ErrorCode::invalid_argument, "the leaf capacity is negative", "use 0 for automatic");
   return options;
 }
 
@@ -49,7 +50,8 @@ void check_result_view(Output outputs, const ResultView& result, std::size_t cou
   const bool missing_potential = has(outputs, Output::potential) && !result.potential;
   const bool missing_field = has(outputs, Output::field) && (!result.field_x || !result.field_y || !result.field_z);
   if (count > 0 && (missing_potential || missing_field))
-    throw Error(ErrorCode::invalid_argument, "an array for a requested output is null", "pass arrays for every output asked for");
+    throw Error(ErrorCode::invalid_argument, "an array for a requested output is null",
+                "pass arrays for every output asked for");
 }
 
 /// Only the arrays of the requested outputs.
@@ -62,7 +64,8 @@ ResultView requested(Output outputs, ResultView result) {
 }  // namespace
 
 Session::Session(Options options)
-    : options_(checked(std::move(options))), cpu_target_(resolve_cpu_target(options_.cpu_target)),
+    : options_(checked(std::move(options))),
+      cpu_target_(resolve_cpu_target(options_.cpu_target)),
       kernels_(kernels::kernel_table(cpu_target_)) {}
 Session::~Session() = default;
 
@@ -95,7 +98,9 @@ void Session::update_charges(const ChargesView& charges) {
   if (merged_) merged_->update_charges(charges);
 }
 
-bool Session::trivial() const noexcept { return charge_sums_.max_abs == 0; }
+bool Session::trivial() const noexcept {
+  return charge_sums_.max_abs == 0;
+}
 
 void Session::start_report(const PointsView& targets) {
   report_ = {};
@@ -133,7 +138,8 @@ void Session::prepare_tree(Executor& executor) {
       scaled.low[axis] = scale(bounds_.low[axis]);
       scaled.high[axis] = scale(bounds_.high[axis]);
     }
-    tree_ = build_octree(positions_, scale, choose_frame(scaled, positions_.count, leaf_fill()), {leaf_capacity()}, executor, ledger_);
+    tree_ = build_octree(positions_, scale, choose_frame(scaled, positions_.count, leaf_fill()), {leaf_capacity()}, executor,
+                         ledger_);
     if (options_.coincident == Coincident::skip)
       merge_coincident(executor);
     else
@@ -243,8 +249,8 @@ std::uint32_t Session::leaf_capacity() const noexcept {
 }
 
 void Session::predict_memory(std::size_t targets, bool same_points) {
-  const MemoryQuery query{positions_.count, targets, same_points,
-                          chosen_method(positions_.count, targets) == Method::tree, options_.tolerance, leaf_fill()};
+  const MemoryQuery query{positions_.count,   targets,    same_points, chosen_method(positions_.count, targets) == Method::tree,
+                          options_.tolerance, leaf_fill()};
   report_.memory.predicted_bytes = predicted_bytes(query);
   refuse_above(report_.memory.predicted_bytes, options_.memory_limit);
 }
@@ -254,7 +260,9 @@ Method Session::chosen_method(std::size_t sources, std::size_t targets) const no
   return std::sqrt(double(sources) * double(targets)) < direct_break_even(options_.tolerance) ? Method::direct : Method::tree;
 }
 
-double Session::leaf_fill() const noexcept { return double(leaf_capacity()) / kCapacityPerFill; }
+double Session::leaf_fill() const noexcept {
+  return double(leaf_capacity()) / kCapacityPerFill;
+}
 
 EvaluationPlan Session::choose_plan(const Prepared& prepared, double tolerance) const noexcept {
   EvaluationPlan plan;
@@ -271,10 +279,18 @@ double Session::charge_rms(const Units& units) const noexcept {
 void Session::run_passes(const Prepared& prepared, const EvaluationPlan& plan, const ResultView& result, Executor& executor) {
   if (nearest_squared_.size() != prepared.targets.count) nearest_squared_ = {ledger_, prepared.targets.count};
   ResultBuffer results(prepared.targets.count, ledger_);
-  const EvaluationJob job{prepared.sources, prepared.charges.data(), prepared.targets, result.field_x != nullptr,
-                          options_.coincident == Coincident::skip, plan.root_accuracy, kernels_, executor, ledger_,
+  const EvaluationJob job{prepared.sources,
+                          prepared.charges.data(),
+                          prepared.targets,
+                          result.field_x != nullptr,
+                          options_.coincident == Coincident::skip,
+                          plan.root_accuracy,
+                          kernels_,
+                          executor,
+                          ledger_,
                           results,
-                          nearest_squared_.data(), options_};
+                          nearest_squared_.data(),
+                          options_};
   report_.plan.leaf_capacity = int(leaf_capacity());
   if (plan.method == Method::tree) tree_evaluator_.evaluate(job, charge_rms(prepared.units), plan.tolerance, report_);
   const Stopwatch watch(report_.seconds.near);
@@ -286,8 +302,7 @@ void Session::refuse_close_pairs(const Prepared& prepared, const ResultView&) {
   const ClosestPair closest = closest_pair(prepared.sources, prepared.targets, nearest_squared_.data());
   report_.notes.nearest_distance = PowerOfTwo(prepared.units.length)(std::sqrt(closest.squared));
   if (&prepared.sources != &prepared.targets && options_.coincident == Coincident::skip) {
-    report_.notes.targets_on_charges =
-        std::size_t(std::count(nearest_squared_.begin(), nearest_squared_.end(), 0.0));
+    report_.notes.targets_on_charges = std::size_t(std::count(nearest_squared_.begin(), nearest_squared_.end(), 0.0));
     return;
   }
   if (!closest.too_close) return;
@@ -295,7 +310,9 @@ void Session::refuse_close_pairs(const Prepared& prepared, const ResultView&) {
   throw_target_on_charge(positions_, closest.target, closest.source, closest.squared == 0);
 }
 
-bool Session::same_points(const Prepared& prepared) noexcept { return &prepared.sources == &prepared.targets; }
+bool Session::same_points(const Prepared& prepared) noexcept {
+  return &prepared.sources == &prepared.targets;
+}
 
 bool Session::verification_wanted(const Prepared& prepared) const noexcept {
   const bool done = same_points(prepared) ? verified_ : verified_targets_;
@@ -306,8 +323,8 @@ void Session::verify(const Prepared& prepared, const ResultView& result, Executo
   const Stopwatch watch(report_.seconds.verify);
   if (options_.on_progress) options_.on_progress(Phase::verify, 0);
   const VerificationOutcome outcome =
-      verify_result({prepared.sources, prepared.charges.data(), charge_rms(prepared.units), prepared.targets, nearest_squared_.data(), result,
-                     prepared.units.potential(), prepared.units.field(), report_.plan.order},
+      verify_result({prepared.sources, prepared.charges.data(), charge_rms(prepared.units), prepared.targets,
+                     nearest_squared_.data(), result, prepared.units.potential(), prepared.units.field(), report_.plan.order},
                     options_.samples, options_.tolerance, kernels_, executor);
   report_.error = outcome.measure;
   report_.notes.field_median = prepared.units.field()(outcome.field_median);
@@ -335,9 +352,10 @@ bool Session::accept_or_retry(const Prepared& prepared, int attempt) {
 }
 
 void Session::check_results(const ResultView& result, Executor& executor) {
-  const IdentityResult identities = check_identities({positions_, charges_, result, bounds_, units_.scale_length(),
-                                                      units_.scale_charge(), units_.potential(), units_.field(), units_.energy()},
-                                                     executor);
+  const IdentityResult identities =
+      check_identities({positions_, charges_, result, bounds_, units_.scale_length(), units_.scale_charge(), units_.potential(),
+                        units_.field(), units_.energy()},
+                       executor);
   if (!identities.finite)
     throw Error(ErrorCode::range_exceeded,
                 "the result at charge " + std::to_string(identities.first_bad) + " is outside the range of double numbers",

@@ -58,7 +58,8 @@ class Session {
   void merge_coincident(Executor& executor);
   void evaluate_merged(Output outputs, const ResultView& result);
 
-  void run_attempts(const Prepared& prepared, const ResultView& result, Executor& executor, const std::function<void()>& after_pass);
+  void run_attempts(const Prepared& prepared, const ResultView& result, Executor& executor,
+                    const std::function<void()>& after_pass);
   std::uint32_t leaf_capacity() const noexcept;
   double leaf_fill() const noexcept;
   Method chosen_method(std::size_t sources, std::size_t targets) const noexcept;
@@ -89,8 +90,8 @@ class Session {
   AlignedArray<double> nearest_squared_;
   TreeEvaluator tree_evaluator_;
   std::unique_ptr<Merged> merged_;
-  bool verified_ = false, verified_targets_ = false;   ///< for Verification::first: at charges, at other targets
-  double aimed_tolerance_ = 0;     ///< tightened where a first attempt missed; kept until charges or places change
+  bool verified_ = false, verified_targets_ = false;  ///< for Verification::first: at charges, at other targets
+  double aimed_tolerance_ = 0;  ///< tightened where a first attempt missed; kept until charges or places change
 };
 
 }  // namespace farsum

@@ -9,7 +9,7 @@
 namespace farsum {
 namespace {
 
-constexpr std::size_t kSurveyTargets = 32;   // 32 pairs a charge; medians of the field scale to about 20 %
+constexpr std::size_t kSurveyTargets = 32;  // 32 pairs a charge; medians of the field scale to about 20 %
 constexpr std::size_t kPiece = 1 << 14;
 
 struct Value {
@@ -21,10 +21,10 @@ void add_piece(const EvaluationJob& job, std::size_t place, std::size_t begin, s
   // The kernel wants an even self index: pieces start at even places, a single odd target is left out by its zero distance.
   const bool inside = job.same_points() && place >= begin && place < end;
   const std::ptrdiff_t self = inside ? std::ptrdiff_t(place - begin) : -1;
-  job.kernels.pair_sums({s.x.data() + begin, s.y.data() + begin, s.z.data() + begin, job.charges + begin,
-                         round_up(end - begin, kSourcePad), &t.x[place], &t.y[place], &t.z[place], 1, self, &value.potential, &value.x,
-                         &value.y, &value.z, &value.nearest},
-                        kernels::RootAccuracy::fast, true, true);
+  job.kernels.pair_sums(
+      {s.x.data() + begin, s.y.data() + begin, s.z.data() + begin, job.charges + begin, round_up(end - begin, kSourcePad),
+       &t.x[place], &t.y[place], &t.z[place], 1, self, &value.potential, &value.x, &value.y, &value.z, &value.nearest},
+      kernels::RootAccuracy::fast, true, true);
 }
 
 std::vector<Value> values_at(const EvaluationJob& job, const std::vector<std::size_t>& places) {
@@ -75,7 +75,7 @@ AllowedError survey(const EvaluationJob& job, double charge_rms) {
   for (const Value& v : values_at(job, places)) {
     potentials.push_back(std::abs(v.potential));
     fields.push_back(std::sqrt(v.x * v.x + v.y * v.y + v.z * v.z));
-    if (v.nearest == 0) continue;   // a target on a charge, or a pair that is refused later
+    if (v.nearest == 0) continue;  // a target on a charge, or a pair that is refused later
     potential_floors.push_back(charge_rms / std::sqrt(v.nearest));
     field_floors.push_back(charge_rms / v.nearest);
   }

@@ -18,16 +18,22 @@ constexpr double kWideBelow = 1e-7;
 
 }  // namespace
 
-int typical_order(double tolerance) noexcept { return int(4.5 - 2 * std::log10(tolerance)); }
+int typical_order(double tolerance) noexcept {
+  return int(4.5 - 2 * std::log10(tolerance));
+}
 
 std::uint32_t default_leaf_capacity(double tolerance) noexcept {
   const double digits = -std::log10(tolerance);
   return std::uint32_t(40 + 10 * digits);
 }
 
-bool single_precision_suffices(double tolerance) noexcept { return tolerance >= 5e-7; }
+bool single_precision_suffices(double tolerance) noexcept {
+  return tolerance >= 5e-7;
+}
 
-double direct_break_even(double tolerance) noexcept { return 2000 + 600 * std::max(0.0, -std::log10(tolerance) - 3); }
+double direct_break_even(double tolerance) noexcept {
+  return 2000 + 600 * std::max(0.0, -std::log10(tolerance) - 3);
+}
 
 template <class Real>
 struct TreeEvaluator::Tables {
@@ -46,7 +52,8 @@ TreeEvaluator::Tables<Real>& TreeEvaluator::tables(int order, Separation separat
       return single_;
     else
       return double_;
-  }();
+  }
+  ();
   if (!kept || kept->translations.order() != order || kept->translations.separation().near_squared != separation.near_squared)
     kept = std::make_unique<Tables<Real>>(order, separation, executor);
   return *kept;

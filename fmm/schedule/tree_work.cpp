@@ -6,9 +6,16 @@ template <class Real>
 TreeWork<Real>::TreeWork(const EvaluationJob& evaluation_job, const TreePlan& tree_plan, const NearLists& near_lists,
                          const BoxAccuracy& box_accuracy_, const OrderChoice& order_choice,
                          const TranslationTables<Real>& translation_tables, const GradientRows<Real>& gradient_rows)
-    : job(evaluation_job), plan(tree_plan), near(near_lists), accuracy(box_accuracy_), orders(order_choice),
-      tables(translation_tables), gradients(gradient_rows), multipole(job.ledger, job.sources.boxes.size(), plan.order),
-      local(job.ledger, job.targets.boxes.size(), plan.order), has_local(job.targets.boxes.size(), 0),
+    : job(evaluation_job),
+      plan(tree_plan),
+      near(near_lists),
+      accuracy(box_accuracy_),
+      orders(order_choice),
+      tables(translation_tables),
+      gradients(gradient_rows),
+      multipole(job.ledger, job.sources.boxes.size(), plan.order),
+      local(job.ledger, job.targets.boxes.size(), plan.order),
+      has_local(job.targets.boxes.size(), 0),
       scratch(std::size_t(job.executor.threads())) {
   for (WorkerScratch<Real>& s : scratch) {
     s.kernel = {job.ledger, kernels::expansion_scratch(plan.order + 1)};
@@ -20,7 +27,8 @@ template <class Real>
 kernels::PointBlock<Real> relative_points(const Octree& tree, const double* charges, std::uint32_t begin, std::uint32_t end,
                                           const std::array<DoubleDouble, 3>& centre, double side, MemoryLedger& ledger,
                                           AlignedArray<Real>& buffer, std::size_t extra_columns) {
-  const std::size_t count = end - begin, padded = round_up(count, kernels::kRealPad<Real>), needed = (4 + extra_columns) * padded;
+  const std::size_t count = end - begin, padded = round_up(count, kernels::kRealPad<Real>),
+                    needed = (4 + extra_columns) * padded;
   if (buffer.size() < needed) buffer = AlignedArray<Real>(ledger, needed + needed / 2);
   const double inverse = 1 / side;
   const double* const from[3] = {tree.x.data() + begin, tree.y.data() + begin, tree.z.data() + begin};
@@ -38,10 +46,10 @@ kernels::PointBlock<Real> relative_points(const Octree& tree, const double* char
 template struct TreeWork<float>;
 template struct TreeWork<double>;
 template kernels::PointBlock<float> relative_points(const Octree&, const double*, std::uint32_t, std::uint32_t,
-                                                    const std::array<DoubleDouble, 3>&, double, MemoryLedger&, AlignedArray<float>&,
-                                                    std::size_t);
+                                                    const std::array<DoubleDouble, 3>&, double, MemoryLedger&,
+                                                    AlignedArray<float>&, std::size_t);
 template kernels::PointBlock<double> relative_points(const Octree&, const double*, std::uint32_t, std::uint32_t,
-                                                     const std::array<DoubleDouble, 3>&, double, MemoryLedger&, AlignedArray<double>&,
-                                                     std::size_t);
+                                                     const std::array<DoubleDouble, 3>&, double, MemoryLedger&,
+                                                     AlignedArray<double>&, std::size_t);
 
 }  // namespace farsum

@@ -14,12 +14,13 @@ namespace farsum {
 
 /// Decisions of one tree evaluation that do not depend on the arithmetic.
 struct TreePlan {
-  int order = 0;                 ///< of every stored expansion
+  int order = 0;  ///< of every stored expansion
   bool single_precision = false;
   DirectRule rule;
 };
 
-/// Rows of coefficients, one for each box, in box order. Rows are plain arrays: copying row_length() reals packs or unpacks a box.
+/// Rows of coefficients, one for each box, in box order. Rows are plain arrays: copying row_length() reals packs or unpacks a
+/// box.
 template <class Real>
 class CoefficientRows {
  public:
@@ -37,9 +38,9 @@ class CoefficientRows {
 /// Scratch of one worker.
 template <class Real>
 struct WorkerScratch {
-  AlignedArray<Real> kernel;              ///< for translate and project
-  AlignedArray<Real> points;              ///< coordinates and charges of one leaf, results of evaluate
-  AlignedArray<Real> gradient;            ///< rows of derivatives
+  AlignedArray<Real> kernel;    ///< for translate and project
+  AlignedArray<Real> points;    ///< coordinates and charges of one leaf, results of evaluate
+  AlignedArray<Real> gradient;  ///< rows of derivatives
   std::vector<const Real*> rows;
   std::vector<Real*> targets;
 };
@@ -60,7 +61,7 @@ struct TreeWork {
   const TranslationTables<Real>& tables;
   const GradientRows<Real>& gradients;
   CoefficientRows<Real> multipole, local;
-  std::vector<std::uint8_t> has_local;    ///< by target box: its local row holds something
+  std::vector<std::uint8_t> has_local;  ///< by target box: its local row holds something
   std::vector<WorkerScratch<Real>> scratch;
 };
 

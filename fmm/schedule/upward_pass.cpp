@@ -5,7 +5,7 @@ namespace farsum {
 namespace {
 
 constexpr std::size_t kLeavesPerTask = 32;
-constexpr std::size_t kParentsPerTask = 128;   // enough boxes of one octant for full vectors
+constexpr std::size_t kParentsPerTask = 128;  // enough boxes of one octant for full vectors
 
 template <class Real>
 void project_leaf(TreeWork<Real>& work, std::size_t b, WorkerScratch<Real>& scratch) {
@@ -14,7 +14,8 @@ void project_leaf(TreeWork<Real>& work, std::size_t b, WorkerScratch<Real>& scra
   const kernels::PointBlock<Real> points =
       relative_points<Real>(tree, work.job.charges, box.begin, box.end, tree.frame.centre(box.place, box.level),
                             tree.frame.box_side(box.level), work.job.ledger, scratch.points);
-  work.kernels().project(points, work.plan.order, false, work.tables.recurrence(), work.multipole.row(b), scratch.kernel.data());
+  work.kernels().project(points, work.plan.order, false, work.tables.recurrence(), work.multipole.row(b),
+                         scratch.kernel.data());
 }
 
 template <class Real>
@@ -29,8 +30,8 @@ void join_children(TreeWork<Real>& work, std::size_t begin, std::size_t end, Wor
           scratch.rows.push_back(work.multipole.row(child));
           scratch.targets.push_back(work.multipole.row(parent));
         }
-    work.kernels().translate(work.tables.child_to_parent(octant), scratch.rows.data(), scratch.targets.data(), scratch.rows.size(),
-                             scratch.kernel.data());
+    work.kernels().translate(work.tables.child_to_parent(octant), scratch.rows.data(), scratch.targets.data(),
+                             scratch.rows.size(), scratch.kernel.data());
   }
 }
 

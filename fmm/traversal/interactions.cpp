@@ -25,7 +25,8 @@ NearLists::NearLists(const Octree& sources, const Octree& targets, const DirectR
 
 void NearLists::add_level(const Octree& sources, const Octree& targets, const DirectRule& rule, int level, Executor& executor) {
   constexpr std::size_t kGrain = 256;
-  const std::size_t first = targets.level_begin[std::size_t(level)], count = targets.level_begin[std::size_t(level) + 1] - first;
+  const std::size_t first = targets.level_begin[std::size_t(level)],
+                    count = targets.level_begin[std::size_t(level) + 1] - first;
   std::vector<std::vector<ListEntry>> pieces((count + kGrain - 1) / kGrain);
   executor.for_each(count, kGrain, [&](std::size_t begin, std::size_t end, int) {
     std::vector<ListEntry>& found = pieces[begin / kGrain];
@@ -33,8 +34,9 @@ void NearLists::add_level(const Octree& sources, const Octree& targets, const Di
       const Box& child = targets.boxes[b];
       const std::size_t before = found.size();
       for_child_relations(
-          sources, this->begin(child.parent), this->end(child.parent), child, rule, [&](const ListEntry& e) { found.push_back(e); },
-          [](std::uint32_t, std::uint32_t) {}, [](std::uint32_t, std::uint32_t) {});
+          sources, this->begin(child.parent), this->end(child.parent), child, rule,
+          [&](const ListEntry& e) { found.push_back(e); }, [](std::uint32_t, std::uint32_t) {},
+          [](std::uint32_t, std::uint32_t) {});
       first_[b + 1] = found.size() - before;
     }
   });

@@ -1,12 +1,12 @@
 #pragma once
 // Who is near, who is far. Source boxes and target boxes lie on one lattice (octree/frame.hpp), in one tree or in two.
 // For a target box the source tree is covered without gap or overlap by
-//   near entries:  boxes of the same level that are near it, and leaves of lower level that touch it (or are summed directly anyway);
-//   far boxes:     boxes of the same level that are not near it but whose parents are near its parent (multipole to local);
-//   coarse boxes:  leaves of lower level that do not touch it, but touch its parent (charges to local);
-//   and what its ancestors have as far or coarse boxes.
-// A target leaf with a divided near box goes down into that: leaves that touch it are near, the first box below that does not touch it
-// is fine (multipole to targets).
+//   near entries:  boxes of the same level that are near it, and leaves of lower level that touch it (or are summed directly
+//   anyway); far boxes:     boxes of the same level that are not near it but whose parents are near its parent (multipole to
+//   local); coarse boxes:  leaves of lower level that do not touch it, but touch its parent (charges to local); and what its
+//   ancestors have as far or coarse boxes.
+// A target leaf with a divided near box goes down into that: leaves that touch it are near, the first box below that does not
+// touch it is fine (multipole to targets).
 #include <algorithm>
 #include <cstdint>
 #include <vector>
@@ -30,7 +30,7 @@ bool touching(const Box& a, const Box& b) noexcept;
 /// How relations are decided: which boxes of one level are near, and when charges of a leaf are summed pair by pair although
 /// expansions would do.
 struct DirectRule {
-  double terms = 0;   ///< pairs that one charge's projection or evaluation costs
+  double terms = 0;  ///< pairs that one charge's projection or evaluation costs
   Separation separation;
 
   /// Boxes of one level by the separation, of different levels if they touch.
@@ -68,8 +68,8 @@ class NearLists {
 /// Splits the near entries of a divided target box among relations to its child `child`:
 /// near(ListEntry), far(source box index, shift), coarse(source box index, shift).
 template <class Near, class Far, class Coarse>
-void for_child_relations(const Octree& sources, const ListEntry* begin, const ListEntry* end, const Box& child, const DirectRule& rule,
-                         const Near& near, const Far& far, const Coarse& coarse) {
+void for_child_relations(const Octree& sources, const ListEntry* begin, const ListEntry* end, const Box& child,
+                         const DirectRule& rule, const Near& near, const Far& far, const Coarse& coarse) {
   for (const ListEntry* entry = begin; entry != end; ++entry) {
     const Box& box = sources.boxes[entry->box];
     if (entry->direct) {
@@ -94,8 +94,8 @@ void for_child_relations(const Octree& sources, const ListEntry* begin, const Li
 /// The near entries of a target leaf, taken apart: direct(source box index, shift) for all that is summed pair by pair,
 /// fine(source box index, shift) for boxes whose multipole acts on the targets.
 template <class Direct, class Fine>
-void for_leaf_relations(const Octree& sources, const ListEntry* begin, const ListEntry* end, const Box& leaf, const DirectRule& rule,
-                        const Direct& direct, const Fine& fine) {
+void for_leaf_relations(const Octree& sources, const ListEntry* begin, const ListEntry* end, const Box& leaf,
+                        const DirectRule& rule, const Direct& direct, const Fine& fine) {
   const auto descend = [&](const auto& self, std::uint32_t b, std::uint32_t shift) -> void {
     const Box& box = sources.boxes[b];
     if (rule.near(leaf, box)) {

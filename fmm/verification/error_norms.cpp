@@ -9,7 +9,7 @@ namespace farsum {
 namespace {
 
 constexpr double kRoundingUnit = 0x1p-53;
-constexpr double kFloorFactor = 8;        // the contract's allowance for rounding in sums of the terms
+constexpr double kFloorFactor = 8;  // the contract's allowance for rounding in sums of the terms
 constexpr double kNormalQuantile95 = 1.6448536269514722;
 
 /// Standard error of the weighted mean square caused by the slice samples (the certain ones have none).

@@ -9,12 +9,12 @@ namespace farsum {
 
 /// One verified target of one output.
 struct SampledError {
-  double error;      ///< |f - f_exact|
-  double size;       ///< |f_exact|
-  double floor_size; ///< q_rms / d^k for this target, d the distance to the nearest other charge
-  double terms;      ///< sum |q| / r^k: what rounding acts on
-  double weight;     ///< number of targets it stands for
-  bool certain;      ///< stands for itself only
+  double error;       ///< |f - f_exact|
+  double size;        ///< |f_exact|
+  double floor_size;  ///< q_rms / d^k for this target, d the distance to the nearest other charge
+  double terms;       ///< sum |q| / r^k: what rounding acts on
+  double weight;      ///< number of targets it stands for
+  bool certain;       ///< stands for itself only
 };
 
 struct NormsResult {

@@ -7,17 +7,28 @@
 namespace farsum {
 namespace {
 
-constexpr std::size_t kPiece = 1 << 12;   // sources per piece: 128 KiB stay in the second-level cache
+constexpr std::size_t kPiece = 1 << 12;  // sources per piece: 128 KiB stay in the second-level cache
 constexpr std::size_t kPiecesPerTask = 4;
 
 void add_piece(const SourceArrays& sources, std::size_t begin, std::size_t end, const ExactTarget& target,
                const kernels::KernelTable& kernels, ExactValue& value) {
   const std::int64_t self = target.self - std::int64_t(begin);
   const bool inside = target.self >= 0 && self >= 0 && target.self < std::int64_t(end);
-  const kernels::PairSums sums{sources.x + begin, sources.y + begin, sources.z + begin, sources.q + begin,
-                               round_up(end - begin, kSourcePad), &target.x, &target.y, &target.z, 1,
-                               inside ? std::ptrdiff_t(self) : -1, &value.potential, &value.field[0], &value.field[1],
-                               &value.field[2], &value.nearest_squared};
+  const kernels::PairSums sums{sources.x + begin,
+                               sources.y + begin,
+                               sources.z + begin,
+                               sources.q + begin,
+                               round_up(end - begin, kSourcePad),
+                               &target.x,
+                               &target.y,
+                               &target.z,
+                               1,
+                               inside ? std::ptrdiff_t(self) : -1,
+                               &value.potential,
+                               &value.field[0],
+                               &value.field[1],
+                               &value.field[2],
+                               &value.nearest_squared};
   kernels.exact_sums({sums, &value.potential_scale, &value.field_scale});
 }
 
@@ -32,7 +43,8 @@ std::vector<ExactValue> exact_values(const SourceArrays& sources, std::span<cons
   executor.for_each(pieces, kPiecesPerTask, [&](std::size_t first, std::size_t last, int) {
     for (std::size_t piece = first; piece < last; ++piece)
       for (std::size_t t = 0; t < n; ++t)
-        add_piece(sources, piece * kPiece, std::min(sources.count, (piece + 1) * kPiece), targets[t], kernels, parts[piece * n + t]);
+        add_piece(sources, piece * kPiece, std::min(sources.count, (piece + 1) * kPiece), targets[t], kernels,
+                  parts[piece * n + t]);
   });
   std::vector<ExactValue> values(n, fresh);
   for (std::size_t t = 0; t < n; ++t) {

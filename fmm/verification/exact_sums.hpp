@@ -1,6 +1,7 @@
 #pragma once
 // Exact sums at a few targets over all sources: double terms with compensated addition, pieces added in extended precision.
-// Error of one target: about 4 eps sqrt(sum of squared terms), far below the smallest tolerance of 1e-13; tested against long double.
+// Error of one target: about 4 eps sqrt(sum of squared terms), far below the smallest tolerance of 1e-13; tested against long
+// double.
 #include <cstdint>
 #include <span>
 #include <vector>

@@ -96,9 +96,13 @@ class Pass {
   double middle_[3];
 };
 
-double norm(const long double (&v)[3]) { return double(std::sqrt(v[0] * v[0] + v[1] * v[1] + v[2] * v[2])); }
+double norm(const long double (&v)[3]) {
+  return double(std::sqrt(v[0] * v[0] + v[1] * v[1] + v[2] * v[2]));
+}
 
-double ratio(double value, double scale) { return scale > 0 ? value / scale : 0; }
+double ratio(double value, double scale) {
+  return scale > 0 ? value / scale : 0;
+}
 
 }  // namespace
 
@@ -120,8 +124,7 @@ IdentityResult check_identities(const IdentityInput& input, Executor& executor) 
   if (input.values.field_x) {
     const double forces = std::sqrt(double(n) * double(sums.force2)), extent = input.length(input.bounds.extent());
     result.checks = {true, ratio(norm(sums.force), forces), ratio(norm(sums.torque), forces * extent), 0};
-    if (input.values.potential)
-      result.checks.virial = ratio(double(std::abs(sums.virial - sums.q_phi / 2)), half_size);
+    if (input.values.potential) result.checks.virial = ratio(double(std::abs(sums.virial - sums.q_phi / 2)), half_size);
     result.field_max = input.field_unit(std::sqrt(sums.field_max2));
   }
   return result;

@@ -10,17 +10,17 @@ struct IdentityInput {
   PointsView positions;
   ChargesView charges;
   ResultView values;
-  Bounds bounds;                              ///< of the positions
-  PowerOfTwo length, charge;                  ///< caller's value -> scaled value
+  Bounds bounds;                                       ///< of the positions
+  PowerOfTwo length, charge;                           ///< caller's value -> scaled value
   PowerOfTwo potential_unit, field_unit, energy_unit;  ///< scaled -> caller's
 };
 
 struct IdentityResult {
-  Energy energy;                 ///< error_bound still to be multiplied by the tolerance
+  Energy energy;  ///< error_bound still to be multiplied by the tolerance
   IdentityChecks checks;
-  double field_max = 0;          ///< caller's units
-  bool finite = true;            ///< every result is a finite number
-  std::size_t first_bad = 0;     ///< first index that is not
+  double field_max = 0;       ///< caller's units
+  bool finite = true;         ///< every result is a finite number
+  std::size_t first_bad = 0;  ///< first index that is not
 };
 
 /// One pass over all results; the order of additions is fixed.

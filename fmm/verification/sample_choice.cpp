@@ -15,7 +15,9 @@ std::uint64_t mix(std::uint64_t v) {
 }
 
 /// Number in [0, 1) for a slice.
-double chance(std::uint64_t slice) { return double(mix(slice) >> 11) * 0x1p-53; }
+double chance(std::uint64_t slice) {
+  return double(mix(slice) >> 11) * 0x1p-53;
+}
 
 /// Adds to the probabilities of places [begin, end) what a weight contributes: share * weight / sum.
 void add_share(const std::uint32_t* begin, const std::uint32_t* end, const std::vector<float>& weight, double share,
@@ -50,7 +52,8 @@ void take_first(std::vector<std::uint32_t>::iterator begin, std::vector<std::uin
 }  // namespace
 
 std::vector<Sample> choose_samples(std::uint32_t n, std::size_t wanted, const std::function<double(std::uint32_t)>& strength,
-                                   const double* nearest_squared, const std::vector<float>& absolute, const std::vector<float>& relative) {
+                                   const double* nearest_squared, const std::vector<float>& absolute,
+                                   const std::vector<float>& relative) {
   std::vector<Sample> samples;
   if (n <= wanted) {
     for (std::uint32_t place = 0; place < n; ++place) samples.push_back({place, 1.0, true});

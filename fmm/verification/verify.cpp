@@ -17,7 +17,10 @@ struct Computed {
 class Reader {
  public:
   explicit Reader(const VerifiedResult& r)
-      : values_(r.values), index_(r.targets.index.data()), potential_(-r.potential_unit.exponent()), field_(-r.field_unit.exponent()) {}
+      : values_(r.values),
+        index_(r.targets.index.data()),
+        potential_(-r.potential_unit.exponent()),
+        field_(-r.field_unit.exponent()) {}
 
   Computed at(std::uint32_t place) const {
     const std::ptrdiff_t i = std::ptrdiff_t(index_[place]) * values_.stride;
@@ -34,7 +37,8 @@ class Reader {
   /// |E|^2, or |phi| where no field was computed.
   double strength(std::uint32_t place) const {
     const Computed c = at(place);
-    return values_.field_x ? c.field[0] * c.field[0] + c.field[1] * c.field[1] + c.field[2] * c.field[2] : std::abs(c.potential);
+    return values_.field_x ? c.field[0] * c.field[0] + c.field[1] * c.field[1] + c.field[2] * c.field[2]
+                           : std::abs(c.potential);
   }
 
  private:
@@ -43,8 +47,8 @@ class Reader {
   PowerOfTwo potential_, field_;
 };
 
-/// By place, the expected squared error of an expansion, absolute and relative: (r / r_corner)^order, r the distance from the centre
-/// of the target's leaf, and the mean squared potential of the leaf over the target's own. Empty without expansions.
+/// By place, the expected squared error of an expansion, absolute and relative: (r / r_corner)^order, r the distance from the
+/// centre of the target's leaf, and the mean squared potential of the leaf over the target's own. Empty without expansions.
 struct ErrorWeights {
   std::vector<float> absolute, relative;
 };
@@ -57,7 +61,8 @@ ErrorWeights error_weights(const Octree& targets, int order, const Reader& reade
   weights.relative.resize(targets.count);
   const auto size2 = [&](std::uint32_t k) {
     const Computed c = reader.at(k);
-    return with_potential ? c.potential * c.potential : c.field[0] * c.field[0] + c.field[1] * c.field[1] + c.field[2] * c.field[2];
+    return with_potential ? c.potential * c.potential
+                          : c.field[0] * c.field[0] + c.field[1] * c.field[1] + c.field[2] * c.field[2];
   };
   executor.for_each(targets.boxes.size(), 64, [&](std::size_t begin, std::size_t end, int) {
     for (std::size_t b = begin; b < end; ++b) {
@@ -88,8 +93,12 @@ bool within(const OutputError& error, double tolerance) {
 
 SampledError potential_error(const Computed& c, const ExactValue& exact, double charge_rms, const Sample& sample) {
   const double nearest = std::sqrt(exact.nearest_squared);
-  return {std::abs(c.potential - exact.potential), std::abs(exact.potential), charge_rms / nearest, exact.potential_scale,
-          sample.weight, sample.certain};
+  return {std::abs(c.potential - exact.potential),
+          std::abs(exact.potential),
+          charge_rms / nearest,
+          exact.potential_scale,
+          sample.weight,
+          sample.certain};
 }
 
 SampledError field_error(const Computed& c, const ExactValue& exact, double charge_rms, const Sample& sample) {
@@ -98,7 +107,8 @@ SampledError field_error(const Computed& c, const ExactValue& exact, double char
     error2 += (c.field[axis] - exact.field[axis]) * (c.field[axis] - exact.field[axis]);
     size2 += exact.field[axis] * exact.field[axis];
   }
-  return {std::sqrt(error2), std::sqrt(size2), charge_rms / exact.nearest_squared, exact.field_scale, sample.weight, sample.certain};
+  return {std::sqrt(error2), std::sqrt(size2), charge_rms / exact.nearest_squared,
+          exact.field_scale, sample.weight,    sample.certain};
 }
 
 }  // namespace
@@ -113,7 +123,8 @@ VerificationOutcome verify_result(const VerifiedResult& result, std::size_t want
       weights.absolute, weights.relative);
   std::vector<ExactTarget> places;
   for (const Sample& s : samples)
-    places.push_back({targets.x[s.place], targets.y[s.place], targets.z[s.place], &sources == &targets ? std::int64_t(s.place) : -1});
+    places.push_back(
+        {targets.x[s.place], targets.y[s.place], targets.z[s.place], &sources == &targets ? std::int64_t(s.place) : -1});
   const std::vector<ExactValue> exact = exact_values(
       {sources.x.data(), sources.y.data(), sources.z.data(), result.charges, sources.count}, places, kernels, executor);
 
