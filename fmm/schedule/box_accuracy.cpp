@@ -11,7 +11,7 @@ namespace {
 /// Weight of the squared total charge of a box beside the sum of squares: errors of one-sign boxes add coherently, but
 /// neighbours in a smooth density cancel most of that. Calibrated on uniform cubes, shells, planes and lines of one sign, t =
 /// 1e-3..1e-12.
-constexpr double kPotentialCoherence = 1.0, kFieldCoherence = 0.25;
+constexpr double kPotentialCoherence = 1.0, kFieldCoherence = 0.15;
 /// Fraction of the nearest-neighbour field q / d^2 of a box (d = mean spacing) that its targets are sure to feel.
 constexpr double kLocalShare = 0.5;
 /// Fraction of the field of the far boxes that is counted on: near charges may cancel some of it.

@@ -24,7 +24,7 @@ struct BoxAccuracy {
 };
 
 /// Fraction of the bearable error of a target that one translation may take.
-inline constexpr double kErrorShare = 1.0 / 32;
+inline constexpr double kErrorShare = 1.0 / 24;
 
 /// For a tolerance. Where the field is stronger than elsewhere a target bears more: that strength is estimated from the total
 /// charges of far boxes and from the density of the target's own neighbours.
