@@ -1,17 +1,30 @@
 #pragma once
 // Owned arrays for numeric data: cache-line aligned, uninitialised, and counted in a ledger so that the report can state
 // the engine's peak memory.
+#include <array>
 #include <atomic>
 #include <cstddef>
 #include <cstdint>
+#include <mutex>
 #include <type_traits>
 #include <utility>
 
 namespace farsum {
 
-/// Bytes held now and at most by the arrays of one solver.
+/// Bytes held now and at most by the arrays of one solver. Keeps a few large blocks that were given back for the next array of
+/// that size: the first touch of fresh memory costs more than many a pass over it.
 class MemoryLedger {
  public:
+  MemoryLedger() = default;
+  MemoryLedger(const MemoryLedger&) = delete;
+  MemoryLedger& operator=(const MemoryLedger&) = delete;
+  ~MemoryLedger();
+
+  /// A block aligned to a cache line, a large one to huge pages. Throws std::bad_alloc. Thread-safe.
+  void* take(std::size_t bytes);
+  /// Gives back a block of take() with the same number of bytes.
+  void give_back(void* block, std::size_t bytes) noexcept;
+
   void add(std::uint64_t bytes) noexcept {
     const std::uint64_t now = current_.fetch_add(bytes, std::memory_order_relaxed) + bytes;
     std::uint64_t peak = peak_.load(std::memory_order_relaxed);
@@ -24,7 +37,15 @@ class MemoryLedger {
   void restart_peak() noexcept { peak_.store(current(), std::memory_order_relaxed); }
 
  private:
+  struct Kept {
+    void* block = nullptr;
+    std::size_t bytes = 0;
+  };
+  static constexpr std::size_t kKeptBlocks = 6;
+
   std::atomic<std::uint64_t> current_{0}, peak_{0};
+  std::mutex guard_;
+  std::array<Kept, kKeptBlocks> kept_{};
 };
 
 /// Counts memory that an array of another kind holds, for as long as this lives.
@@ -47,11 +68,6 @@ class LedgerShare {
   std::uint64_t bytes_ = 0;
 };
 
-/// Memory aligned to a cache line; large blocks to huge pages, which the system is asked to use (page faults and address
-/// look-ups cost a third of a solve of 10^6 charges with small pages). Throws std::bad_alloc.
-void* allocate_pages(std::size_t bytes);
-void release_pages(void* block, std::size_t bytes) noexcept;
-
 /// Fixed-size array of trivial elements, aligned to a cache line, contents undefined at first.
 template <class T>
 class AlignedArray {
@@ -61,8 +77,7 @@ class AlignedArray {
   AlignedArray() = default;
   AlignedArray(MemoryLedger& ledger, std::size_t size) : ledger_(&ledger), size_(size) {
     if (size == 0) return;
-    data_ = static_cast<T*>(allocate_pages(size * sizeof(T)));
-    ledger_->add(size * sizeof(T));
+    data_ = static_cast<T*>(ledger.take(size * sizeof(T)));
   }
   AlignedArray(AlignedArray&& other) noexcept
       : ledger_(other.ledger_), data_(std::exchange(other.data_, nullptr)), size_(std::exchange(other.size_, 0)) {}
@@ -74,8 +89,7 @@ class AlignedArray {
   }
   ~AlignedArray() {
     if (!data_) return;
-    ledger_->remove(size_ * sizeof(T));
-    release_pages(data_, size_ * sizeof(T));
+    ledger_->give_back(data_, size_ * sizeof(T));
   }
 
   T* data() noexcept { return data_; }

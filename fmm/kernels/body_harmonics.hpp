@@ -113,15 +113,18 @@ template <class Real, std::size_t vectors, int n_rows>
 inline void evaluate_vectors(const PointBlock<Real>& points, std::size_t first, int order, bool irregular,
                              const Recurrence<Real>& recurrence, const Real* const* rows, Real* const* values) {
   const HarmonicInput<Real, vectors> in = harmonic_input<Real, vectors>(points, first, irregular);
+  // The term of degree 0 is by far the largest of a potential: it comes last, so that it does not round the others away.
   Vec<Real> sum[n_rows][vectors] = {};
   for_harmonics<Real, vectors>(in, order, recurrence, [&](int cosine, int sine, const Vec<Real>* c, const Vec<Real>* s) {
+    if (cosine == 0) return;
     for (int row = 0; row < n_rows; ++row) {
       const Real weight_c = rows[row][cosine], weight_s = rows[row][sine];
       for (std::size_t u = 0; u < vectors; ++u) sum[row][u] += weight_c * c[u] + weight_s * s[u];
     }
   });
   for (int row = 0; row < n_rows; ++row)
-    for (std::size_t u = 0; u < vectors; ++u) store(values[row] + first + u * kWidth<Real>, sum[row][u]);
+    for (std::size_t u = 0; u < vectors; ++u)
+      store(values[row] + first + u * kWidth<Real>, sum[row][u] + rows[row][0] * in.start[u]);
 }
 
 template <class Real, int n_rows>

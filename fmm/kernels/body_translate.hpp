@@ -115,16 +115,29 @@ inline void gather_lanes(const Real* const* rows, std::size_t count, std::size_t
     }
 }
 
+template <class Real>
+inline void add_with_carry(Real* sum, Real* carry, Vec<Real> term) {
+  const Vec<Real> old = load(sum), next = old + term, back = next - old;
+  store(carry, load(carry) + ((old - (next - back)) + (term - back)));
+  store(sum, next);
+}
+
 template <class Real, std::size_t vectors>
-inline void scatter_lanes(const Vec<Real>* lanes, std::size_t terms, std::size_t count, Real* const* targets) {
+inline void scatter_lanes(const Vec<Real>* lanes, std::size_t terms, std::size_t count, std::size_t carry, Real* const* targets) {
   constexpr std::size_t w = kWidth<Real>;
   for (std::size_t u = 0; u < vectors; ++u)
     for (std::size_t i = 0; i < terms; i += w) {
       Vec<Real> block[w];
       for (std::size_t k = 0; k < w; ++k) block[k] = lanes[(i + k) * vectors + u];
       transpose<Real>(block);
-      for (std::size_t k = 0; k < w && u * w + k < count; ++k)
-        store(targets[u * w + k] + i, load(targets[u * w + k] + i) + block[k]);
+      const bool carried = carry > 0 && i * sizeof(Real) < 64;
+      for (std::size_t k = 0; k < w && u * w + k < count; ++k) {
+        Real* const to = targets[u * w + k] + i;
+        if (carried)
+          add_with_carry(to, to + carry, block[k]);
+        else
+          store(to, load(to) + block[k]);
+      }
     }
 }
 
@@ -144,7 +157,7 @@ inline void translate_batch(const Translation<Real>& t, const Real* const* rows,
   batch.turn_back();
   batch.template rotate_about_z<false>(t.scale_out);
   for (std::size_t i = used * vectors; i < terms * vectors; ++i) batch.by_degree[i] = Vec<Real>{};
-  scatter_lanes<Real, vectors>(batch.by_degree, terms, count, targets);
+  scatter_lanes<Real, vectors>(batch.by_degree, terms, count, t.carry, targets);
 }
 
 template <class Real>

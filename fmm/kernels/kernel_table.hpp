@@ -52,6 +52,9 @@ struct Translation {
   const Real *turn, *turn_back;      ///< blocks of the rotation about y, per degree: cosine part, sine part (row blocks)
   const Real* shift;                 ///< per m: (order - m + 1)^2 matrix in row blocks
   const Real *scale_in, *scale_out;  ///< per degree
+  /// If not 0: the rounding errors of adding to the first 64 bytes of a target (its lowest degrees, which collect from hundreds of
+  /// boxes) are added to the 64 bytes at this place behind its start.
+  std::size_t carry = 0;
 };
 
 /// Factors of the harmonic recurrences: row m at table + m * stride holds d_m, unused, then a_nm, b_nm for n = m + 1, m + 2,

@@ -23,6 +23,9 @@ constexpr double kFieldZeros = 0.1;
 /// whose points all sit in one corner gets 0.3 octaves per degree.
 constexpr double kSpreadPower = 6, kSpreadFactor = 0.45;
 
+/// As kErrorShare, for potentials: with both signs most of them come from large boxes, whose few translations do not average out.
+constexpr double kPotentialErrorShare = 1.0 / 48;
+
 struct Moments {
   double sum = 0, squares = 0;
 };
@@ -146,20 +149,17 @@ BoxAccuracy box_accuracy(const EvaluationJob& job, const NearLists& near, const 
                          double tolerance) {
   const std::vector<Moments> moments = charge_moments(job);
   const std::vector<FarEstimate> far = far_estimates(job, near, rule, moments);
-  const double share = tolerance * kErrorShare;
+  const double share = tolerance * kErrorShare, potential_share = tolerance * kPotentialErrorShare;
   BoxAccuracy accuracy;
-  accuracy.base_potential = logarithm(share * allowed.potential);
+  accuracy.base_potential = logarithm(potential_share * allowed.potential);
   accuracy.base_field = logarithm(share * allowed.field);
-  accuracy.strength_potential.resize(moments.size());
-  accuracy.strength_field.resize(moments.size());
+  const std::vector<float> source_spread = spreads(job.sources);
+  accuracy.target_spread = job.same_points() ? source_spread : spreads(job.targets);
   for (std::size_t b = 0; b < moments.size(); ++b) {
     const double square = moments[b].sum * moments[b].sum;
-    accuracy.strength_potential[b] = logarithm(std::sqrt(moments[b].squares + kPotentialCoherence * square));
-    accuracy.strength_field[b] = logarithm(std::sqrt(moments[b].squares + kFieldCoherence * square));
+    accuracy.sources.push_back({logarithm(std::sqrt(moments[b].squares + kPotentialCoherence * square)),
+                                logarithm(std::sqrt(moments[b].squares + kFieldCoherence * square)), source_spread[b]});
   }
-
-  accuracy.source_spread = spreads(job.sources);
-  accuracy.target_spread = job.same_points() ? accuracy.source_spread : spreads(job.targets);
   const std::vector<Box>& boxes = job.targets.boxes;
   const float unlimited = std::numeric_limits<float>::infinity();
   accuracy.bearable_potential.assign(boxes.size(), unlimited);
@@ -179,7 +179,7 @@ BoxAccuracy box_accuracy(const EvaluationJob& job, const NearLists& near, const 
     // 1 / max(|phi|, m)^2 is about 1 / (p m), so the norm "typical" bears sqrt(p m) only.
     if (both_signs) potential = std::sqrt(potential * allowed.least_potential);
     potential = std::max(potential, allowed.potential);
-    accuracy.bearable_potential[b] = logarithm(share * potential);
+    accuracy.bearable_potential[b] = logarithm(potential_share * potential);
     // A field in space seldom comes near zero, but charges that lie nearly in a plane or on a line bring it there more often.
     if (field > allowed.least_field) field *= std::pow(allowed.least_field / field, kFieldZeros);
     field = std::max(field, allowed.field);

@@ -11,15 +11,21 @@ namespace farsum {
 
 /// Base-2 logarithms, scaled units; see expansion/order_choice.hpp.
 struct BoxAccuracy {
-  std::vector<float> strength_potential, strength_field;  ///< by source box
+  /// Side by side, as one look-up of a source in random order needs all three.
+  struct Source {
+    float strength_potential, strength_field;
+    float spread;  ///< octaves per degree, see TranslationDemand
+  };
+  std::vector<Source> sources;                            ///< by source box
   std::vector<float> bearable_potential, bearable_field;  ///< by target box
-  std::vector<float> source_spread, target_spread;        ///< by box: octaves per degree, see TranslationDemand
+  std::vector<float> target_spread;                       ///< by target box
   float base_field = 0, base_potential = 0;               ///< what the survey alone allows
 
-  std::size_t bytes() const noexcept { return sizeof(float) * (3 * strength_potential.size() + 3 * bearable_field.size()); }
+  std::size_t bytes() const noexcept { return sizeof(Source) * sources.size() + 3 * sizeof(float) * bearable_field.size(); }
   TranslationDemand demand(std::size_t target, std::size_t source) const noexcept {
-    return {strength_potential[source], strength_field[source], bearable_potential[target], bearable_field[target],
-            source_spread[source] + target_spread[target]};
+    const Source& s = sources[source];
+    return {s.strength_potential, s.strength_field, bearable_potential[target], bearable_field[target],
+            s.spread + target_spread[target]};
   }
 };
 

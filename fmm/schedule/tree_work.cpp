@@ -14,7 +14,7 @@ TreeWork<Real>::TreeWork(const EvaluationJob& evaluation_job, const TreePlan& tr
       tables(translation_tables),
       gradients(gradient_rows),
       multipole(job.ledger, job.sources.boxes.size(), plan.order),
-      local(job.ledger, job.targets.boxes.size(), plan.order),
+      local(job.ledger, job.targets.boxes.size(), plan.order, kernels::kRealPad<Real>),
       has_local(job.targets.boxes.size(), 0),
       scratch(std::size_t(job.executor.threads())) {
   for (WorkerScratch<Real>& s : scratch) {

@@ -24,8 +24,9 @@ struct TreePlan {
 template <class Real>
 class CoefficientRows {
  public:
-  CoefficientRows(MemoryLedger& ledger, std::size_t boxes, int order)
-      : stride_(row_length<Real>(order)), values_(ledger, boxes * stride_) {}
+  /// extra: reals kept behind the coefficients of each row.
+  CoefficientRows(MemoryLedger& ledger, std::size_t boxes, int order, std::size_t extra = 0)
+      : stride_(row_length<Real>(order) + extra), values_(ledger, boxes * stride_) {}
   Real* row(std::size_t box) noexcept { return values_.data() + box * stride_; }
   const Real* row(std::size_t box) const noexcept { return values_.data() + box * stride_; }
   void clear_row(std::size_t box) noexcept { std::memset(row(box), 0, stride_ * sizeof(Real)); }
