@@ -88,7 +88,7 @@ class Translation : public unit::OnTarget {
     int offsets = 0;
     for (int index = 0; index < kOffsets; ++index) {
       const BoxOffset o = offset_of(index);
-      if (o.near()) continue;
+      if (!Separation{}.occurs(o)) continue;
       ++offsets;
       const std::vector<Real> local = translator.translated(translator.tables.far(index, order), multipole);
       const double wanted = std::min(rounding_octaves, double(coulomb::truncation_row(o.squared())->potential[order]) - 3);
@@ -113,7 +113,7 @@ TEST_P(Translation, FarOfAMonopoleIsAnIrregularHarmonic) {
   charge[0] = 1;
   for (int index = 0; index < kOffsets; index += 7) {
     const BoxOffset o = offset_of(index);
-    if (o.near()) continue;
+    if (!Separation{}.occurs(o)) continue;
     const std::vector<double> local = translator.translated(translator.tables.far(index, 30), charge);
     const std::vector<long double> exact =
         unit::harmonics(30, {(long double)(o.x), (long double)(o.y), (long double)(o.z)}, true);
@@ -214,9 +214,18 @@ TEST(BoxOffset, IndexAndOffsetAreInverse) {
   int far = 0;
   for (int index = 0; index < kOffsets; ++index) {
     EXPECT_EQ(offset_index(offset_of(index)), index);
-    far += !offset_of(index).near();
+    far += Separation{}.occurs(offset_of(index));
   }
   EXPECT_EQ(far, 316);
+}
+
+TEST(BoxOffset, WideSeparationHasTheOffsetsOfTheNearestPairsChildrenInstead) {
+  constexpr Separation kWide{4};
+  EXPECT_TRUE(kWide.near({2, 0, 0}));
+  EXPECT_FALSE(kWide.occurs({0, -2, 0}));
+  EXPECT_TRUE(kWide.occurs({5, 1, -1}));
+  EXPECT_FALSE(kWide.occurs({5, 2, 0}));
+  EXPECT_FALSE(Separation{}.occurs({4, 0, 0}));
 }
 
 TEST(TranslationTables, AreTheSameFromAnyNumberOfThreads) {

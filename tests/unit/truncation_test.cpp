@@ -14,13 +14,17 @@ namespace {
 using coulomb::truncation_row;
 using coulomb::TruncationRow;
 
-TEST(TruncationTable, HasEveryDistanceOfAFarPairAndNoOther) {
-  bool occurs[28] = {};
-  for (int index = 0; index < kOffsets; ++index)
-    if (!offset_of(index).near()) occurs[offset_of(index).squared()] = true;
-  for (int squared = 0; squared < 28; ++squared) EXPECT_EQ(truncation_row(squared) != nullptr, occurs[squared]) << squared;
-  EXPECT_EQ(truncation_row(28), nullptr);
-  EXPECT_EQ(truncation_row(-1), nullptr);
+TEST(TruncationTable, HasEveryDistanceOfAFarPair) {
+  for (int index = 0; index < kOffsets; ++index) {
+    const BoxOffset o = offset_of(index);
+    if (Separation{}.occurs(o)) EXPECT_EQ(truncation_row(o.squared())->squared_distance, o.squared());
+  }
+}
+
+TEST(TruncationTable, TakesTheNextSmallerDistanceWhereNoneWasMeasured) {
+  EXPECT_EQ(truncation_row(16)->squared_distance, 14);
+  EXPECT_EQ(truncation_row(28)->squared_distance, 27);
+  EXPECT_EQ(truncation_row(75)->squared_distance, 27);
 }
 
 TEST(TruncationTable, AHigherOrderIsNeverWorse) {
