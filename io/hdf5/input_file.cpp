@@ -5,6 +5,8 @@
 #include <cmath>
 #include <cstring>
 
+#include "io/hdf5/header_check.hpp"
+
 namespace farsum::io::hdf5 {
 namespace {
 
@@ -24,6 +26,7 @@ Handle make_link_access(bool allow_external) {
 }
 
 Handle open_file(const std::string& path) {
+  check_structure(path);
   const Handle access(H5Pcreate(H5P_FILE_ACCESS), H5Pclose);
   H5Pset_fclose_degree(access.get(), H5F_CLOSE_SEMI);
   H5Pset_file_locking(access.get(), true, true);
