@@ -1,5 +1,6 @@
 #pragma once
-// A file opened for reading that is not trusted: links to other files are refused, lists and attributes are bounded.
+// A file opened for reading that is not trusted: its structure is checked before HDF5 sees it (header_check.hpp), links to
+// other files are refused, lists and attributes are bounded.
 #include <cstdint>
 #include <optional>
 #include <string>
