@@ -11,7 +11,7 @@ namespace {
 /// capping.
 constexpr double kGrowth = 1.8, kCappedPart = 0.05;
 /// Expansions of unequal boxes are judged as the nearest far pair of boxes of one level.
-constexpr int kNearestSquared = 5;
+constexpr int kNearestSquared = 4;
 
 /// Of many boxes one in so many is asked; odd, so that no octant is preferred.
 constexpr std::size_t kAllBoxes = 10000, kSampleStride = 5;

@@ -58,7 +58,9 @@ void expect_contract(const Subject& subject, const Options& options, double stat
     EXPECT_EQ(outcome.report.plan.method, "tree");
   }
   EXPECT_TRUE(outcome.report.error.met);
-  EXPECT_EQ(outcome.report.error.samples, std::min(options.samples, subject.charges.size()));
+  // Up to 3000 targets are verified whole.
+  const std::size_t targets = subject.charges.size();
+  EXPECT_EQ(outcome.report.error.samples, targets <= 3000 ? targets : options.samples);
   expect_output("potential", outcome.report.error.potential, found.potential, t, stated_factor);
   expect_output("field", outcome.report.error.field, found.field, t, stated_factor);
 }
