@@ -45,8 +45,8 @@ struct Options {
   Method method = Method::automatic;
   Coincident coincident = Coincident::error;
   Verification verification = Verification::first;
-  /// Number of targets at which exact sums are formed. Of small sets (up to 3000 targets) all are taken: it costs milliseconds, and
-  /// the stated error is then the true one.
+  /// Number of targets at which exact sums are formed. Of small sets (up to 3000 targets) all are taken: it costs milliseconds,
+  /// and the stated error is then the true one.
   std::size_t samples = 200;
   /// Return the best reachable result instead of an error when the tolerance is missed or cannot be carried by the data.
   bool best_effort = false;

@@ -16,8 +16,8 @@ std::align_val_t alignment_of(std::size_t bytes) noexcept {
   return std::align_val_t{bytes >= kHugeFrom ? kHugePage : kCacheLine};
 }
 
-/// Small blocks keep their size; large ones are whole huge pages, which the system is asked to use: with small pages, page faults and
-/// address look-ups cost a third of a solve of 10^6 charges.
+/// Small blocks keep their size; large ones are whole huge pages, which the system is asked to use: with small pages, page
+/// faults and address look-ups cost a third of a solve of 10^6 charges.
 std::size_t block_size(std::size_t bytes) noexcept {
   return bytes >= kHugeFrom ? (bytes + kHugePage - 1) / kHugePage * kHugePage : bytes;
 }
@@ -28,7 +28,9 @@ void* new_block(std::size_t size) {
   return block;
 }
 
-void delete_block(void* block, std::size_t size) noexcept { ::operator delete(block, alignment_of(size)); }
+void delete_block(void* block, std::size_t size) noexcept {
+  ::operator delete(block, alignment_of(size));
+}
 
 }  // namespace
 
@@ -56,7 +58,8 @@ void MemoryLedger::give_back(void* block, std::size_t bytes) noexcept {
   Kept returned{block, block_size(bytes)};
   if (returned.bytes >= kHugeFrom) {
     const std::lock_guard lock(guard_);
-    Kept& smallest = *std::min_element(kept_.begin(), kept_.end(), [](const Kept& a, const Kept& b) { return a.bytes < b.bytes; });
+    Kept& smallest =
+        *std::min_element(kept_.begin(), kept_.end(), [](const Kept& a, const Kept& b) { return a.bytes < b.bytes; });
     if (smallest.bytes < returned.bytes) std::swap(smallest, returned);
   }
   if (!returned.block) return;

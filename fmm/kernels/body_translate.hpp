@@ -123,7 +123,8 @@ inline void add_with_carry(Real* sum, Real* carry, Vec<Real> term) {
 }
 
 template <class Real, std::size_t vectors>
-inline void scatter_lanes(const Vec<Real>* lanes, std::size_t terms, std::size_t count, std::size_t carry, Real* const* targets) {
+inline void scatter_lanes(const Vec<Real>* lanes, std::size_t terms, std::size_t count, std::size_t carry,
+                          Real* const* targets) {
   constexpr std::size_t w = kWidth<Real>;
   for (std::size_t u = 0; u < vectors; ++u)
     for (std::size_t i = 0; i < terms; i += w) {

@@ -52,8 +52,8 @@ struct Translation {
   const Real *turn, *turn_back;      ///< blocks of the rotation about y, per degree: cosine part, sine part (row blocks)
   const Real* shift;                 ///< per m: (order - m + 1)^2 matrix in row blocks
   const Real *scale_in, *scale_out;  ///< per degree
-  /// If not 0: the rounding errors of adding to the first 64 bytes of a target (its lowest degrees, which collect from hundreds of
-  /// boxes) are added to the 64 bytes at this place behind its start.
+  /// If not 0: the rounding errors of adding to the first 64 bytes of a target (its lowest degrees, which collect from hundreds
+  /// of boxes) are added to the 64 bytes at this place behind its start.
   std::size_t carry = 0;
 };
 

@@ -23,7 +23,8 @@ constexpr double kFieldZeros = 0.1;
 /// whose points all sit in one corner gets 0.3 octaves per degree.
 constexpr double kSpreadPower = 6, kSpreadFactor = 0.45;
 
-/// As kErrorShare, for potentials: with both signs most of them come from large boxes, whose few translations do not average out.
+/// As kErrorShare, for potentials: with both signs most of them come from large boxes, whose few translations do not average
+/// out.
 constexpr double kPotentialErrorShare = 1.0 / 48;
 
 struct Moments {

@@ -62,8 +62,8 @@ class LevelTask {
   }
 
  private:
-  /// Where a local row keeps the rounding errors of its lowest degrees; without them, adding hundreds of boxes in single precision
-  /// costs 6e-7 of the potential of 10^6 charges of both signs.
+  /// Where a local row keeps the rounding errors of its lowest degrees; without them, adding hundreds of boxes in single
+  /// precision costs 6e-7 of the potential of 10^6 charges of both signs.
   std::size_t carry() const { return row_length<Real>(work_.plan.order); }
   void add_carry(Real* row) const {
     for (std::size_t i = 0; i < kernels::kRealPad<Real>; ++i) row[i] += row[carry() + i];
@@ -108,8 +108,8 @@ class LevelTask {
     }
     kernels::Translation<Real> translation = work_.tables.far(offset, order);
     translation.carry = carry();
-    work_.kernels().translate(translation, scratch_.rows.data(), scratch_.targets.data(),
-                              scratch_.rows.size(), scratch_.kernel.data());
+    work_.kernels().translate(translation, scratch_.rows.data(), scratch_.targets.data(), scratch_.rows.size(),
+                              scratch_.kernel.data());
   }
 
   TreeWork<Real>& work_;

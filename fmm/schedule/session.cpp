@@ -324,10 +324,10 @@ bool Session::verification_wanted(const Prepared& prepared) const noexcept {
 void Session::verify(const Prepared& prepared, const ResultView& result, Executor& executor) {
   const Stopwatch watch(report_.seconds.verify);
   if (options_.on_progress) options_.on_progress(Phase::verify, 0);
-  const VerificationOutcome outcome =
-      verify_result({prepared.sources, prepared.charges.data(), charge_rms(prepared.units), prepared.targets,
-                     nearest_squared_.data(), result, prepared.units.potential(), prepared.units.field(), report_.plan.order},
-                    prepared.targets.count <= kWholeSet ? prepared.targets.count : options_.samples, options_.tolerance, kernels_, executor);
+  const VerificationOutcome outcome = verify_result(
+      {prepared.sources, prepared.charges.data(), charge_rms(prepared.units), prepared.targets, nearest_squared_.data(), result,
+       prepared.units.potential(), prepared.units.field(), report_.plan.order},
+      prepared.targets.count <= kWholeSet ? prepared.targets.count : options_.samples, options_.tolerance, kernels_, executor);
   report_.error = outcome.measure;
   report_.notes.field_median = prepared.units.field()(outcome.field_median);
 }

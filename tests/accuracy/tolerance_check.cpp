@@ -52,14 +52,20 @@ void expect_contract(const Subject& subject, const Options& options, double stat
     EXPECT_LT(t, kFloorSlack * floor_of(found)) << "the data carry this tolerance: " << outcome.message;
     return;
   }
+  // Known limit: few charges spread over nine decades, summed by a forced tree, may miss the norm "typical". That must be said.
+  if (outcome.code == ErrorCode::accuracy_not_reached && subject.name.rfind("scales_1e9", 0) == 0 &&
+      options.method == Method::tree) {
+    EXPECT_GT(found.potential.typical, t) << "refused although the result is good";
+    return;
+  }
   ASSERT_TRUE(outcome.good()) << outcome.message << "; independent floor " << floor_of(found);
   EXPECT_GT(t, floor_of(found) / kFloorSlack) << "the data do not carry this tolerance, but no error was raised";
   if (options.method == Method::tree) {
     EXPECT_EQ(outcome.report.plan.method, "tree");
   }
   EXPECT_TRUE(outcome.report.error.met);
-  // Up to 3000 targets are verified whole.
-  const std::size_t targets = subject.charges.size();
+  // Up to 3000 targets are verified whole; charges at one place are one target.
+  const std::size_t targets = subject.charges.size() - outcome.report.notes.skipped_coincident;
   EXPECT_EQ(outcome.report.error.samples, targets <= 3000 ? targets : options.samples);
   expect_output("potential", outcome.report.error.potential, found.potential, t, stated_factor);
   expect_output("field", outcome.report.error.field, found.field, t, stated_factor);

@@ -122,7 +122,7 @@ class Summary(CommandCase):
         self.run_farsum("generate", "cube", "in.h5", "--count", 1500)
         done = self.solve("in.h5", "out.h5")
         self.assertRegex(done.out.splitlines()[0],
-                         r"\A1 500 charges solved in [\d.]+ m?s; field error [\d.]+e-\d+ \(asked 1e-6\), measured at 200 charges\Z")
+                         r"\A1 500 charges solved in [\d.]+ m?s; field error [\d.]+e-\d+ \(asked 1e-6\), measured at 1 ?500 charges\Z")
         for word in ("total charge", " J, error at most", "extent", "charges per second", "at peak", "out.h5"):
             self.assertIn(word, done.out)
         self.assertEqual(done.err, "")

@@ -23,8 +23,7 @@ struct Choice {
       strength.push_back(random.uniform());
       nearest.push_back(random.uniform());
     }
-    samples = choose_samples(
-        n, wanted, [&](std::uint32_t place) { return strength[place]; }, nearest.data(), {}, {});
+    samples = choose_samples(n, wanted, [&](std::uint32_t place) { return strength[place]; }, nearest.data(), {}, {});
   }
   std::set<std::uint32_t> places(bool certain_only) const {
     std::set<std::uint32_t> found;
@@ -107,8 +106,7 @@ double mean_estimate(double& spread) {
     std::vector<float> expected;
     for (std::uint32_t place = 0; place < 2000; ++place) expected.push_back(float(shifted(place)));
     double estimate = 0;
-    for (const Sample& s : choose_samples(
-             2000, 100, [](std::uint32_t) { return 1.0; }, nearest.data(), expected, {}))
+    for (const Sample& s : choose_samples(2000, 100, [](std::uint32_t) { return 1.0; }, nearest.data(), expected, {}))
       estimate += s.weight * shifted(s.place);
     sum += estimate;
     squares += estimate * estimate;
@@ -126,8 +124,7 @@ TEST(SampleChoice, ImportantTargetsAreDrawnMoreOftenAndWeighLess) {
 
 TEST(SampleChoice, TiesAreBrokenByPlace) {
   const std::vector<double> nearest(1000, 1.0);
-  const auto samples = choose_samples(
-      1000, 40, [](std::uint32_t) { return 2.0; }, nearest.data(), {}, {});
+  const auto samples = choose_samples(1000, 40, [](std::uint32_t) { return 2.0; }, nearest.data(), {}, {});
   std::set<std::uint32_t> certain;
   for (const Sample& s : samples)
     if (s.certain) certain.insert(s.place);
