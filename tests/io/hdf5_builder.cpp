@@ -15,7 +15,7 @@ void must(bool good, const std::string& what) {
 }  // namespace
 
 Folder::Folder() {
-  std::string name = (std::filesystem::temp_directory_path() / "farsum_io_XXXXXX").string();
+  std::string name = (std::filesystem::temp_directory_path() / ("farsum_io_" + std::string(6, 'X'))).string();
   must(mkdtemp(name.data()) != nullptr, name);
   path_ = name;
 }
