@@ -8,10 +8,12 @@ namespace {
 constexpr ErrorCode kWriteFault = ErrorCode::file_not_writable;
 
 Handle create_file(const std::string& path) {
+  const Handle creation(H5Pcreate(H5P_FILE_CREATE), H5Pclose);
+  H5Pset_obj_track_times(creation.get(), false);  // the root group keeps times of its own
   const Handle access(H5Pcreate(H5P_FILE_ACCESS), H5Pclose);
   H5Pset_fclose_degree(access.get(), H5F_CLOSE_SEMI);
   H5Pset_libver_bounds(access.get(), H5F_LIBVER_V18, H5F_LIBVER_V110);
-  return own(H5Fcreate(path.c_str(), H5F_ACC_EXCL, H5P_DEFAULT, access.get()), H5Fclose, kWriteFault, path, {},
+  return own(H5Fcreate(path.c_str(), H5F_ACC_EXCL, creation.get(), access.get()), H5Fclose, kWriteFault, path, {},
              "the file cannot be created");
 }
 

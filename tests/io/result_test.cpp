@@ -4,10 +4,12 @@
 #include <sys/wait.h>
 #include <unistd.h>
 
+#include <chrono>
 #include <cmath>
 #include <csignal>
 #include <filesystem>
 #include <fstream>
+#include <thread>
 
 #include "io/conformity.hpp"
 #include "io/particle_reader.hpp"
@@ -271,6 +273,7 @@ TEST_F(Result, EqualRunsGiveEqualBytes) {
   setenv("SOURCE_DATE_EPOCH", "1700000000", 1);
   const std::string second = folder_.file("second.h5");
   write_result(out_, set, sums.columns(), {}, {});
+  std::this_thread::sleep_for(std::chrono::milliseconds(1100));  // the next second of any clock that a file might keep
   write_result(second, set, sums.columns(), {}, {});
   unsetenv("SOURCE_DATE_EPOCH");
   const auto bytes = [](const std::string& path) {
