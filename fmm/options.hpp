@@ -41,7 +41,6 @@ struct Options {
   /// Error asked for, 1e-13 <= tolerance <= 1e-2. Met when for each output rms <= tolerance and typical <= 3 tolerance
   /// (fmm/report.hpp defines both).
   double tolerance = 1e-6;
-  /// Outputs whose scale steers the accuracy choices; evaluate() may ask for a subset.
   Method method = Method::automatic;
   Coincident coincident = Coincident::error;
   Verification verification = Verification::first;

@@ -9,6 +9,7 @@
 #include <random>
 #include <vector>
 
+#include "fmm/base/aligned_array.hpp"
 #include "fmm/expansion/gradient.hpp"
 #include "fmm/expansion/translation.hpp"
 #include "fmm/kernels/dispatch.hpp"
@@ -59,7 +60,9 @@ Exact exact_at(const Cloud& sources, const farsum::BoxOffset& o, double tx, doub
 class Measurement {
  public:
   explicit Measurement(farsum::Executor& executor)
-      : tables_(kMaxOrder, executor), gradients_(kMaxOrder), scratch_(farsum::kernels::expansion_scratch(kMaxOrder + 1)) {}
+      : tables_(kMaxOrder, executor),
+        gradients_(kMaxOrder),
+        scratch_(ledger_, farsum::kernels::expansion_scratch(kMaxOrder + 1)) {}
 
   void add_trial(const Cloud& sources, const Cloud& targets, const farsum::BoxOffset& o, Squares& squares) {
     const auto& kernels = farsum::kernels::kernel_table(farsum::CpuTarget::portable).double_precision;
@@ -91,7 +94,8 @@ class Measurement {
 
   farsum::TranslationTables<double> tables_;
   farsum::GradientRows<double> gradients_;
-  std::vector<double> scratch_;
+  farsum::MemoryLedger ledger_;
+  farsum::AlignedArray<double> scratch_;
 };
 
 /// -log2 of the RMS, continued by its last clear slope where rounding takes over.

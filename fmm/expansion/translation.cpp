@@ -147,43 +147,27 @@ void TranslationTables<Real>::make_recurrence() {
 }
 
 template <class Real>
-kernels::Translation<Real> TranslationTables<Real>::far(int offset, int order) const {
+kernels::Translation<Real> TranslationTables<Real>::translation(int offset, int order, const std::vector<Real>& shift,
+                                                                const Scales& scales) const {
   const Direction& direction = directions_[std::size_t(offset)];
-  const Scales& scales = far_scales_.at(offset_of(offset).squared());
-  return {order,
-          direction.cos_m.data(),
-          direction.sin_m.data(),
-          direction.turn->forward.data(),
-          direction.turn->back.data(),
-          far_shifts_[std::size_t(order)].data(),
-          scales.in.data(),
-          scales.out.data()};
+  return {
+      order,        direction.cos_m.data(), direction.sin_m.data(), direction.turn->forward.data(), direction.turn->back.data(),
+      shift.data(), scales.in.data(),       scales.out.data()};
+}
+
+template <class Real>
+kernels::Translation<Real> TranslationTables<Real>::far(int offset, int order) const {
+  return translation(offset, order, far_shifts_[std::size_t(order)], far_scales_.at(offset_of(offset).squared()));
 }
 
 template <class Real>
 kernels::Translation<Real> TranslationTables<Real>::child_to_parent(int octant) const {
-  const Direction& direction = directions_[std::size_t(offset_index(corner_of(octant)))];
-  return {order_,
-          direction.cos_m.data(),
-          direction.sin_m.data(),
-          direction.turn->forward.data(),
-          direction.turn->back.data(),
-          up_shift_.data(),
-          up_scales_.in.data(),
-          up_scales_.out.data()};
+  return translation(offset_index(corner_of(octant)), order_, up_shift_, up_scales_);
 }
 
 template <class Real>
 kernels::Translation<Real> TranslationTables<Real>::parent_to_child(int octant) const {
-  const Direction& direction = directions_[std::size_t(offset_index(corner_of(octant)))];
-  return {order_,
-          direction.cos_m.data(),
-          direction.sin_m.data(),
-          direction.turn->forward.data(),
-          direction.turn->back.data(),
-          down_shift_.data(),
-          down_scales_.in.data(),
-          down_scales_.out.data()};
+  return translation(offset_index(corner_of(octant)), order_, down_shift_, down_scales_);
 }
 
 template <class Real>

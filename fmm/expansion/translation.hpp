@@ -40,6 +40,7 @@ class TranslationTables {
   struct Scales {
     std::vector<Real> in, out;
   };
+  kernels::Translation<Real> translation(int offset, int order, const std::vector<Real>& shift, const Scales& scales) const;
   void make_turns(Executor& executor);
   template <class Entry>
   void append_turn(Turn& turn, const Entry& entry);

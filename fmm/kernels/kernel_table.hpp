@@ -65,7 +65,7 @@ struct Recurrence {
   std::size_t stride;
 };
 
-/// Reals of scratch that every expansion kernel needs at most for an order.
+/// Reals of scratch that every expansion kernel needs at most for an order; scratch is aligned to 64 bytes.
 constexpr std::size_t expansion_scratch(int order) noexcept {
   // three work arrays of lanes (two vectors of at most 16 reals), rounded up to whole vectors
   return 3 * (std::size_t(order + 1) * std::size_t(order + 2) + 16) * 32;

@@ -10,7 +10,7 @@ namespace farsum {
 
 /// Levels below the root that the lattice resolves: points nearer than side / 2^60 cannot be told apart by boxes.
 inline constexpr int kMaxLevel = 60;
-/// Levels covered by one 63-bit Morton key; deeper boxes get new keys inside an ancestor.
+/// Levels covered by one 60-bit Morton key; deeper boxes get new keys inside an ancestor.
 inline constexpr int kKeyLevels = 20;
 
 using BoxCoordinates = std::array<std::int64_t, 3>;

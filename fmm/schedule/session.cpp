@@ -31,7 +31,7 @@ constexpr double kCapacityPerFill = 2.5;
 
 Options checked(Options options) {
   if (!(options.tolerance >= 1e-13 && options.tolerance <= 1e-2))
-    throw Error(ErrorCode::invalid_argument, "tolerance " + std::to_string(options.tolerance) + " is out of range",
+    throw Error(ErrorCode::invalid_argument, "tolerance " + short_number(options.tolerance) + " is out of range",
                 "choose a tolerance from 1e-13 to 1e-2");
   if (options.threads < 0) throw Error(ErrorCode::invalid_argument, "the number of threads is negative", "use 0 for all");
   if (options.leaf_capacity < 0)
@@ -232,7 +232,7 @@ void Session::run_attempts(const Prepared& prepared, const ResultView& result, E
       const Stopwatch watch(report_.seconds.solve);
       run_passes(prepared, choose_plan(prepared, tolerance), result, executor);
     }
-    refuse_close_pairs(prepared, result);
+    refuse_close_pairs(prepared);
     after_pass();
     if (!verification_wanted(prepared)) break;
     verify(prepared, result, executor);
@@ -300,7 +300,7 @@ void Session::run_passes(const Prepared& prepared, const EvaluationPlan& plan, c
   results.deliver(result, prepared.targets.index.data(), prepared.units.potential(), prepared.units.field(), executor);
 }
 
-void Session::refuse_close_pairs(const Prepared& prepared, const ResultView&) {
+void Session::refuse_close_pairs(const Prepared& prepared) {
   const ClosestPair closest = closest_pair(prepared.sources, prepared.targets, nearest_squared_.data());
   report_.notes.nearest_distance = PowerOfTwo(prepared.units.length)(std::sqrt(closest.squared));
   if (&prepared.sources != &prepared.targets && options_.coincident == Coincident::skip) {

@@ -67,7 +67,7 @@ class Session {
   double charge_rms(const Units& units) const noexcept;
   EvaluationPlan choose_plan(const Prepared& prepared, double tolerance) const noexcept;
   void run_passes(const Prepared& prepared, const EvaluationPlan& plan, const ResultView& result, Executor& executor);
-  void refuse_close_pairs(const Prepared& prepared, const ResultView& result);
+  void refuse_close_pairs(const Prepared& prepared);
   void verify(const Prepared& prepared, const ResultView& result, Executor& executor);
   bool accept_or_retry(const Prepared& prepared, int attempt);
   void check_results(const ResultView& result, Executor& executor);
